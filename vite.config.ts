@@ -1,0 +1,24 @@
+import { sveltekit } from '@sveltejs/kit/vite';
+import tailwindcss from '@tailwindcss/vite';
+import { defineConfig } from 'vitest/config';
+
+const alias = { $lib: new URL('./src/lib', import.meta.url).pathname };
+
+export default defineConfig({
+	plugins: [tailwindcss(), sveltekit()],
+	build: { sourcemap: false },
+	test: {
+		projects: [
+			{ resolve: { alias }, test: { name: 'unit', include: ['tests/unit/**/*.test.ts'], environment: 'node' } },
+			{ resolve: { alias }, test: { name: 'reference', include: ['tests/reference/**/*.test.ts'], environment: 'node', testTimeout: 60_000 } },
+			{
+				resolve: { alias },
+				test: { name: 'server', include: ['tests/server/**/*.test.ts'], environment: 'node', testTimeout: 60_000, hookTimeout: 120_000, fileParallelism: false }
+			},
+			{
+				resolve: { alias },
+				test: { name: 'browser', include: ['tests/browser/**/*.test.ts'], environment: 'node', testTimeout: 180_000, hookTimeout: 240_000, fileParallelism: false }
+			}
+		]
+	}
+});

@@ -9,15 +9,42 @@ export default defineConfig({
 	build: { sourcemap: false },
 	test: {
 		projects: [
-			{ resolve: { alias }, test: { name: 'unit', include: ['tests/unit/**/*.test.ts'], environment: 'node' } },
-			{ resolve: { alias }, test: { name: 'reference', include: ['tests/reference/**/*.test.ts'], environment: 'node', testTimeout: 60_000 } },
 			{
 				resolve: { alias },
-				test: { name: 'server', include: ['tests/server/**/*.test.ts'], environment: 'node', testTimeout: 60_000, hookTimeout: 120_000, fileParallelism: false }
+				test: { name: 'unit', include: ['tests/unit/**/*.test.ts'], environment: 'node' }
 			},
 			{
 				resolve: { alias },
-				test: { name: 'browser', include: ['tests/browser/**/*.test.ts'], environment: 'node', testTimeout: 180_000, hookTimeout: 240_000, fileParallelism: false }
+				test: {
+					name: 'reference',
+					include: ['tests/reference/**/*.test.ts'],
+					environment: 'node',
+					testTimeout: 60_000
+				}
+			},
+			{
+				resolve: { alias },
+				test: {
+					name: 'server',
+					include: ['tests/server/**/*.test.ts'],
+					globalSetup: ['tests/services.ts'],
+					environment: 'node',
+					testTimeout: 60_000,
+					hookTimeout: 120_000,
+					fileParallelism: false
+				}
+			},
+			{
+				resolve: { alias },
+				test: {
+					name: 'browser',
+					include: ['tests/browser/**/*.test.ts'],
+					globalSetup: ['tests/services.ts'],
+					environment: 'node',
+					testTimeout: 180_000,
+					hookTimeout: 240_000,
+					fileParallelism: false
+				}
 			}
 		]
 	}

@@ -7,8 +7,7 @@ const config = {
 	compilerOptions: { runes: true },
 	kit: {
 		adapter: adapter({ out: 'build', precompress: true }),
-		// Cookie-authenticated writes are checked against ORIGIN in hooks.server.ts as well; kit itself checks form types only.
-		csrf: { checkOrigin: true },
+
 		csp: {
 			mode: 'nonce',
 			directives: {
@@ -29,7 +28,13 @@ const config = {
 		typescript: {
 			config: (tsconfig) => ({
 				...tsconfig,
-				include: [...tsconfig.include, '../scripts/**/*.ts', '../drizzle.config.ts', '../tailwind.config.ts', '../tests/**/*.ts']
+				include: [
+					...tsconfig.include,
+					'../scripts/**/*.ts',
+					'../drizzle.config.ts',
+					'../tailwind.config.ts',
+					'../tests/**/*.ts'
+				]
 			})
 		}
 	}

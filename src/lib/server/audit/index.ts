@@ -1,0 +1,1 @@
+export { record, type Recorded } from './record';

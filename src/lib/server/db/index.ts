@@ -1,0 +1,11 @@
+export {
+	closeDatabase,
+	connect,
+	connection,
+	database,
+	type Connection,
+	type Database,
+	type Transaction
+} from './client';
+export { requestDigest, transact, type Repeatable } from './transact';
+export * as schema from './schema';

@@ -1,7 +1,7 @@
 import { and, eq, isNull, sql } from 'drizzle-orm';
 import { v7 as uuidv7 } from 'uuid';
 import * as audit from '../audit';
-import { authorise, type Act } from '../auth';
+import { authorise, ringRevoked, type Act } from '../auth';
 import { schema, transact } from '../db';
 import { conflict, notFound } from '../errors';
 
@@ -89,6 +89,8 @@ export async function placeInTeam(
 				during: sql`tstzrange(now(), null)` as never
 			});
 		}
+		// Open live documents of the earlier team close at once.
+		await ringRevoked(tx, input.userId);
 		await audit.record(tx, {
 			actorId: act.viewer.id,
 			courseId: input.courseId,

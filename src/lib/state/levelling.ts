@@ -1,0 +1,234 @@
+/** An entry of a margin, in content coordinates (px from the top of the page column). */
+export interface LevelEntry {
+	id: string;
+	/** top of the first line it talks about */
+	wanted: number;
+	/** natural height, px */
+	height: number;
+	/** order among entries on one line: smaller is older */
+	age: number;
+	/** larger stays open longer */
+	urgency: number;
+	/** entries that may gather into one line together */
+	block: string;
+	/** the entry in hand: it stands where it wants to, the others give way, and it never folds */
+	active: boolean;
+	/** its block was opened by hand: it never folds */
+	opened: boolean;
+}
+
+export interface LevelledEntry {
+	id: string;
+	top: number;
+	/** top - wanted: below its line (+) or above it (-) */
+	displaced: number;
+	form: 'full' | 'line' | 'gathered' | 'hidden';
+	/** how many entries a gathered one speaks for, itself included; 1 otherwise */
+	more: number;
+}
+
+export interface LevelRules {
+	/** px between two entries */
+	gap: number;
+	/** px between two folded ones */
+	lineGap: number;
+	/** px that a folded entry takes */
+	lineHeight: number;
+	/** px of displacement from which neighbours fold */
+	foldBeyond: number;
+	/** weight of the active entry, against 1 of the others */
+	activeWeight: number;
+}
+
+export const remarkRules: LevelRules = {
+	gap: 14,
+	lineGap: 2,
+	lineHeight: 21,
+	foldBeyond: 168,
+	activeWeight: 1e6
+};
+/** One 28 px line each; nothing to fold. */
+export const laneRules: LevelRules = {
+	gap: 0,
+	lineGap: 0,
+	lineHeight: 28,
+	foldBeyond: Infinity,
+	activeWeight: 1e6
+};
+
+/** px of displacement past which a hairline leads to the words. */
+export const leaderBeyond = 7;
+
+interface Box {
+	wanted: number;
+	/** with the gap to the next one */
+	height: number;
+	weight: number;
+}
+
+/** Adjacent entries that touch: tops are `start` plus what stands above within the run. */
+interface Run {
+	first: number;
+	last: number;
+	weight: number;
+	mean: number;
+}
+
+/**
+ * Tops of boxes in a given order that minimise the weighted squares of displacement, none overlapping, none above 0. Subtracting cumulative heights turns "not overlapping" into "not decreasing":
+ * weighted isotonic regression, solved exactly by pooling adjacent violators; its solution under a lower bound is the
+ * clamped one. O(n).
+ */
+export function levelTops(boxes: readonly Box[]): { tops: number[]; runs: [number, number][] } {
+	const above: number[] = [];
+	let total = 0;
+	for (const box of boxes) {
+		above.push(total);
+		total += box.height;
+	}
+	const runs: Run[] = [];
+	boxes.forEach((box, index) => {
+		let run: Run = { first: index, last: index, weight: box.weight, mean: box.wanted - (above[index] ?? 0) };
+		for (let before = runs.at(-1); before !== undefined && before.mean > run.mean; before = runs.at(-1)) {
+			runs.pop();
+			const weight = before.weight + run.weight;
+			run = {
+				first: before.first,
+				last: run.last,
+				weight,
+				mean: (before.mean * before.weight + run.mean * run.weight) / weight
+			};
+		}
+		runs.push(run);
+	});
+	const tops: number[] = [];
+	for (const run of runs) {
+		for (let index = run.first; index <= run.last; index++) {
+			tops.push(Math.max(0, run.mean) + (above[index] ?? 0));
+		}
+	}
+	// Runs that the clamp or equality has pushed together crowd each other like one.
+	const crowds: [number, number][] = [];
+	let level = NaN;
+	for (const run of runs) {
+		const start = Math.max(0, run.mean);
+		const crowd = crowds.at(-1);
+		if (crowd !== undefined && start === level) crowd[1] = run.last;
+		else crowds.push([run.first, run.last]);
+		level = start;
+	}
+	return { tops, runs: crowds };
+}
+
+type Form = LevelledEntry['form'];
+
+/**
+ * Levels the entries of one margin. Where a crowd stands farther than `foldBeyond` from its lines, its least urgent
+ * entries fold to a line; when that is not enough, the folded ones of a block gather into "5 more on 3.1".
+ * The active entry and opened blocks stay whole. Ties of urgency fold the younger first.
+ */
+export function levelEntries(entries: readonly LevelEntry[], rules: LevelRules): LevelledEntry[] {
+	const order = [...entries].sort((a, b) => a.wanted - b.wanted || a.age - b.age || (a.id < b.id ? -1 : 1));
+	const forms: Form[] = order.map(() => 'full');
+	const more: number[] = order.map(() => 1);
+
+	for (;;) {
+		const shown = order.flatMap((entry, index) => (forms[index] === 'hidden' ? [] : [{ entry, index }]));
+		const { tops, runs } = levelTops(
+			shown.map(({ entry, index }, place) => {
+				const next = shown[place + 1];
+				const whole = forms[index] === 'full';
+				const nextWhole = next === undefined || forms[next.index] === 'full';
+				return {
+					wanted: entry.wanted,
+					height:
+						(whole ? entry.height : Math.min(entry.height, rules.lineHeight)) +
+						(whole || nextWhole ? rules.gap : rules.lineGap),
+					weight: entry.active ? rules.activeWeight : 1
+				};
+			})
+		);
+		const displacements = shown.map(({ entry }, place) => (tops[place] ?? 0) - entry.wanted);
+		const crowd = worstCrowd(runs, displacements, rules.foldBeyond);
+		if (crowd !== null) {
+			const members = shown.slice(crowd[0], crowd[1] + 1);
+			if (foldOne(members, forms, rules) || gatherOne(members, forms, more)) continue;
+			// Nothing more to fold here; the others are still served below, so look past this crowd.
+			const other = runs.find((run) => {
+				if (run === crowd) return false;
+				const far = displacements.slice(run[0], run[1] + 1).some((d) => Math.abs(d) > rules.foldBeyond);
+				const group = shown.slice(run[0], run[1] + 1);
+				return far && (foldOne(group, forms, rules) || gatherOne(group, forms, more));
+			});
+			if (other !== undefined) continue;
+		}
+		const places = new Map(shown.map(({ index }, place) => [index, place]));
+		let lastTop = 0;
+		return order.map((entry, index) => {
+			const place = places.get(index);
+			if (place !== undefined) lastTop = tops[place] ?? 0;
+			return {
+				id: entry.id,
+				top: lastTop,
+				displaced: place === undefined ? 0 : (displacements[place] ?? 0),
+				form: forms[index] ?? 'full',
+				more: more[index] ?? 1
+			};
+		});
+	}
+}
+
+function worstCrowd(
+	runs: [number, number][],
+	displacements: readonly number[],
+	foldBeyond: number
+): [number, number] | null {
+	let worst: [number, number] | null = null;
+	let farthest = foldBeyond;
+	for (const run of runs) {
+		for (let place = run[0]; place <= run[1]; place++) {
+			const distance = Math.abs(displacements[place] ?? 0);
+			if (distance > farthest) {
+				farthest = distance;
+				worst = run;
+			}
+		}
+	}
+	return worst;
+}
+
+interface Member {
+	entry: LevelEntry;
+	index: number;
+}
+
+/** Folds the least urgent, youngest whole entry of a crowd; false when none can fold. */
+function foldOne(members: readonly Member[], forms: Form[], rules: LevelRules): boolean {
+	const candidates = members
+		.filter(({ entry, index }) => forms[index] === 'full' && !entry.active && !entry.opened)
+		.filter(({ entry }) => entry.height > rules.lineHeight)
+		.sort((a, b) => a.entry.urgency - b.entry.urgency || b.entry.age - a.entry.age || b.index - a.index);
+	const chosen = candidates[0];
+	if (chosen === undefined) return false;
+	forms[chosen.index] = 'line';
+	return true;
+}
+
+/** Gathers the folded lines of the block that has most of them; false when no block has two. */
+function gatherOne(members: readonly Member[], forms: Form[], more: number[]): boolean {
+	const blocks = new Map<string, Member[]>();
+	for (const member of members) {
+		const { entry, index } = member;
+		if (entry.active || entry.opened || forms[index] === 'hidden') continue;
+		blocks.set(entry.block, [...(blocks.get(entry.block) ?? []), member]);
+	}
+	const largest = [...blocks.values()]
+		.filter((group) => group.length > 1)
+		.sort((a, b) => b.length - a.length || (a[0]?.index ?? 0) - (b[0]?.index ?? 0))[0];
+	const speaker = largest?.[0];
+	if (largest === undefined || speaker === undefined) return false;
+	forms[speaker.index] = 'gathered';
+	more[speaker.index] = largest.reduce((sum, { index }) => sum + (more[index] ?? 1), 0);
+	for (const { index } of largest.slice(1)) forms[index] = 'hidden';
+	return true;
+}

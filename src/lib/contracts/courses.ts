@@ -2,7 +2,7 @@ import { z } from 'zod';
 import { operation } from './operation';
 import { instant, page, pageQuery, uuid, wallClock } from './shapes';
 
-const slug = z.string().regex(/^[a-z0-9][a-z0-9-]{0,62}$/);
+export const slug = z.string().regex(/^[a-z0-9][a-z0-9-]{0,62}$/);
 const courseParams = z.object({ course: slug });
 const role = z.enum(['student', 'grader', 'instructor']);
 

@@ -1,5 +1,6 @@
 export { changeDates, grantExtension, type Dates } from './dates';
 export { dueFor, type Due } from './due';
+export { extensionsOf, type ExtensionRow } from './extensions-of';
 export {
 	mine,
 	open,

@@ -5,5 +5,10 @@ import type { PageServerLoad } from './$types';
 export const load: PageServerLoad = (event) =>
 	forPage(event, async () => {
 		const { viewer } = await event.parent();
-		return { now: await desk.now(viewer, new Date()) };
+		const instant = new Date();
+		const now = await desk.now(viewer, instant);
+		return {
+			now: { ...now, student: now.student.map((line) => ({ ...line, href: desk.workHref(line) })) },
+			instant
+		};
 	});

@@ -1,0 +1,28 @@
+export {
+	readReadings,
+	rowIds,
+	insertRows,
+	setCell,
+	setStatus,
+	setParameter,
+	removeRow,
+	writeReadings,
+	type NewRow,
+	type RowStatus
+} from './readings';
+export { sectionText, readText, writeText } from './section';
+export { seedSection, seedReadings } from './seed';
+export { orderBetween, ordersBetween, compareOrder } from './order';
+export {
+	encodeMessage,
+	parseClientMessage,
+	parseServerMessage,
+	documentName,
+	parseDocumentName,
+	type ClientMessage,
+	type ServerMessage,
+	type BarrierMessage,
+	type StoredMessage,
+	type RefusedMessage,
+	type DocumentAddress
+} from './messages';

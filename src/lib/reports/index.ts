@@ -21,3 +21,4 @@ export {
 	type TextPositionSelector,
 	type FragmentSelector
 } from './anchors';
+export { compareResults, shownResults, type ResultDifference, type ShownResult } from './shown-results';

@@ -1,0 +1,11 @@
+export { handIn } from './hand-in';
+export { openReport, openSheet } from './open-report';
+export { showReport } from './show-report';
+export { showSnapshot } from './show-snapshot';
+export { readSnapshot, DamagedSnapshotError } from './read-snapshot';
+export { recompute, type Recomputed } from './recompute';
+export { factsOf, stateFacts, stateForAuthor, stateOf, statesOf, type StateFacts } from './state';
+export { reportById, reportOf, lockReport, type ReportRow } from './report-row';
+export { attemptsOf, presentAttempt } from './attempts';
+export { type GatheredReport } from './gather-report';
+export { type Manifest, type Snapshot } from './manifest';

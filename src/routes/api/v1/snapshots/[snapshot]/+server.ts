@@ -1,0 +1,7 @@
+import { reports as contracts } from '$lib/contracts';
+import { endpoint } from '$lib/server/http';
+import * as reports from '$lib/server/reports';
+
+export const GET = endpoint(contracts.readSnapshot, ({ viewer, params }) =>
+	reports.showSnapshot(viewer, params.snapshot)
+);

@@ -6,7 +6,7 @@ const config = {
 	preprocess: vitePreprocess(),
 	compilerOptions: { runes: true },
 	kit: {
-		adapter: adapter({ out: 'build', precompress: true }),
+		adapter: adapter({ out: process.env.MENISCUS_BUILD_FOLDER ?? 'build', precompress: true }),
 
 		csp: {
 			mode: 'nonce',

@@ -1,11 +1,12 @@
 import { sveltekit } from '@sveltejs/kit/vite';
 import tailwindcss from '@tailwindcss/vite';
 import { defineConfig } from 'vitest/config';
+import { liveSocket } from './scripts/live-socket';
 
 const alias = { $lib: new URL('./src/lib', import.meta.url).pathname };
 
 export default defineConfig({
-	plugins: [tailwindcss(), sveltekit()],
+	plugins: [tailwindcss(), sveltekit(), liveSocket()],
 	build: { sourcemap: false },
 	test: {
 		projects: [

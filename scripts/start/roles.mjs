@@ -44,3 +44,16 @@ export async function ensureDatabase(superuserUrl) {
 		await sql.end();
 	}
 }
+
+/**
+ * Removes the database and what is in it.
+ * @param {string} superuserUrl
+ */
+export async function dropDatabase(superuserUrl) {
+	const sql = postgres(superuserUrl, { max: 1, onnotice: () => undefined });
+	try {
+		await sql.unsafe(`DROP DATABASE IF EXISTS ${databaseName} WITH (FORCE)`);
+	} finally {
+		await sql.end();
+	}
+}

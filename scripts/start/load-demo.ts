@@ -1,0 +1,5 @@
+import { loadDemo } from '../demo';
+
+await loadDemo();
+// Pools the verbs opened would keep the process waiting.
+process.exit(0);

@@ -49,30 +49,113 @@ export interface DisplayForms {
 	html: string; // our own escaped markup with <sup>, class names only
 	speech: string; // '41.6 with standard uncertainty 0.6 kilojoules per mole'
 }
-export interface BudgetLine { source: string; label: string; contribution: number; share: number; degreesOfFreedom: number | null }
+export interface BudgetLine {
+	source: string;
+	label: string;
+	contribution: number;
+	share: number;
+	degreesOfFreedom: number | null;
+}
 
-export interface ShownColumn { name: string; label: string; symbol: string; unit: string; unitHtml: string; computed: boolean; resolution: string | null }
-export interface ShownCell { text: string; value: number | null; standardUncertainty: number | null; problem: string | null }
-export interface ShownTable { name: string; caption: string; columns: ShownColumn[]; rows: { id: string; number: number; status: ReadingRow['status']; reason?: string; cells: Record<string, ShownCell> }[] }
+export interface ShownColumn {
+	name: string;
+	label: string;
+	symbol: string;
+	unit: string;
+	unitHtml: string;
+	computed: boolean;
+	resolution: string | null;
+}
+export interface ShownCell {
+	text: string;
+	value: number | null;
+	standardUncertainty: number | null;
+	problem: string | null;
+}
+export interface ShownTable {
+	name: string;
+	caption: string;
+	columns: ShownColumn[];
+	rows: {
+		id: string;
+		number: number;
+		status: ReadingRow['status'];
+		reason?: string;
+		cells: Record<string, ShownCell>;
+	}[];
+}
 export interface ShownFit {
-	name: string; label: string; model: 'line'; policy: 'scatter' | 'stated';
-	points: number; degreesOfFreedom: number; residualStandardDeviation: number | null; chiSquared: number | null;
-	parameters: { slope: ShownQuantity; intercept: ShownQuantity }; covariance: number;
+	name: string;
+	label: string;
+	model: 'line';
+	policy: 'scatter' | 'stated';
+	points: number;
+	degreesOfFreedom: number;
+	residualStandardDeviation: number | null;
+	chiSquared: number | null;
+	parameters: { slope: ShownQuantity; intercept: ShownQuantity };
+	covariance: number;
 	/** a sentence that says the policy in force */
 	sentence: string;
 }
 export interface ShownComparison {
-	name: string; quantity: string; reference: { value: number; unit: string; standardUncertainty: number | null; conditions: string; source: string; display: DisplayForms };
-	measured: DisplayForms; difference: number; standardUncertainty: number; expanded95: number; normalisedError: number | null;
-	verdict: 'compatible' | 'not compatible' | 'too uncertain to tell'; sentence: string;
+	name: string;
+	quantity: string;
+	reference: {
+		value: number;
+		unit: string;
+		standardUncertainty: number | null;
+		conditions: string;
+		source: string;
+		display: DisplayForms;
+	};
+	measured: DisplayForms;
+	difference: number;
+	standardUncertainty: number;
+	expanded95: number;
+	normalisedError: number | null;
+	verdict: 'compatible' | 'not compatible' | 'too uncertain to tell';
+	sentence: string;
 }
 export interface FigureData {
-	name: string; caption: string; x: { label: string; symbol: string; unit: string }; y: { label: string; symbol: string; unit: string };
-	series: { label: string; points: { row: string; x: number; y: number; ux: number | null; uy: number | null; residual: number | null; used: boolean }[] }[];
-	line: { slope: number; intercept: number; from: number; to: number; band: { x: number; low: number; high: number }[] } | null;
+	name: string;
+	caption: string;
+	x: { label: string; symbol: string; unit: string };
+	y: { label: string; symbol: string; unit: string };
+	series: {
+		label: string;
+		points: {
+			row: string;
+			x: number;
+			y: number;
+			ux: number | null;
+			uy: number | null;
+			residual: number | null;
+			used: boolean;
+		}[];
+	}[];
+	line: {
+		slope: number;
+		intercept: number;
+		from: number;
+		to: number;
+		band: { x: number; low: number; high: number }[];
+	} | null;
 }
-export interface SampleStep { tex: string; note: string } // 'formula', 'substitution', 'result'
-export interface SampleCalculation { name: string; title: string; row: string | null; symbolic: string; substituted: string; result: string; partials: { symbol: string; tex: string; value: number; unit: string }[]; budget: BudgetLine[] }
+export interface SampleStep {
+	tex: string;
+	note: string;
+} // 'formula', 'substitution', 'result'
+export interface SampleCalculation {
+	name: string;
+	title: string;
+	row: string | null;
+	symbolic: string;
+	substituted: string;
+	result: string;
+	partials: { symbol: string; tex: string; value: number; unit: string }[];
+	budget: BudgetLine[];
+}
 
 export interface Evaluation {
 	engine: string; // version, part of every snapshot
@@ -174,11 +257,10 @@ export interface ConstantDefinition {
 export type Formula =
 	| { op: 'number'; value: number; text: string }
 	| { op: 'unit'; unit: string }
-	/** a parameter, constant or result */
+	/** a parameter, constant, result or a fit's slope or intercept */
 	| { op: 'name'; name: string }
 	/** in a formula of the same table's rows: that row's cell; inside mean(), sum()...: the whole column */
 	| { op: 'column'; table: string; column: string }
-	| { op: 'fit'; fit: string; part: 'slope' | 'intercept' }
 	| { op: 'negate'; of: Formula }
 	| { op: 'add' | 'subtract' | 'multiply' | 'divide' | 'power'; left: Formula; right: Formula }
 	| { op: 'call'; function: string; arguments: Formula[] };
@@ -239,8 +321,21 @@ export interface FigureDefinition {
 
 /** What has to be there while the apparatus still is. */
 export type RequirementDefinition =
-	| { kind: 'parameter'; code: string; parameter: string; severity: 'error' | 'warning' | 'note'; message: string }
-	| { kind: 'rows'; code: string; table: string; minimum: number; severity: 'error' | 'warning' | 'note'; message: string }
+	| {
+			kind: 'parameter';
+			code: string;
+			parameter: string;
+			severity: 'error' | 'warning' | 'note';
+			message: string;
+	  }
+	| {
+			kind: 'rows';
+			code: string;
+			table: string;
+			minimum: number;
+			severity: 'error' | 'warning' | 'note';
+			message: string;
+	  }
 	| {
 			kind: 'span';
 			code: string;

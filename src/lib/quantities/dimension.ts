@@ -1,0 +1,69 @@
+/** Exponents of metre, kilogram, second, ampere, kelvin, mole, candela. */
+export type Dimension = readonly [number, number, number, number, number, number, number];
+
+const baseUnits = ['m', 'kg', 's', 'A', 'K', 'mol', 'cd'] as const;
+
+export const dimensionless: Dimension = [0, 0, 0, 0, 0, 0, 0];
+
+export function multiplyDimensions(a: Dimension, b: Dimension): Dimension {
+	return [a[0] + b[0], a[1] + b[1], a[2] + b[2], a[3] + b[3], a[4] + b[4], a[5] + b[5], a[6] + b[6]];
+}
+
+export function divideDimensions(a: Dimension, b: Dimension): Dimension {
+	return [a[0] - b[0], a[1] - b[1], a[2] - b[2], a[3] - b[3], a[4] - b[4], a[5] - b[5], a[6] - b[6]];
+}
+
+export function raiseDimension(a: Dimension, exponent: number): Dimension {
+	// + 0 turns -0 into 0, which would otherwise show up when dimensions are compared as JSON
+	const raise = (n: number) => n * exponent + 0;
+	return [raise(a[0]), raise(a[1]), raise(a[2]), raise(a[3]), raise(a[4]), raise(a[5]), raise(a[6])];
+}
+
+export function sameDimension(a: Dimension, b: Dimension): boolean {
+	return a === b || a.every((exponent, i) => exponent === b[i]);
+}
+
+export function isDimensionless(a: Dimension): boolean {
+	return sameDimension(a, dimensionless);
+}
+
+const named: readonly [string, Dimension][] = [
+	['number', dimensionless],
+	['length', [1, 0, 0, 0, 0, 0, 0]],
+	['area', [2, 0, 0, 0, 0, 0, 0]],
+	['volume', [3, 0, 0, 0, 0, 0, 0]],
+	['mass', [0, 1, 0, 0, 0, 0, 0]],
+	['time', [0, 0, 1, 0, 0, 0, 0]],
+	['electric current', [0, 0, 0, 1, 0, 0, 0]],
+	['temperature', [0, 0, 0, 0, 1, 0, 0]],
+	['amount of substance', [0, 0, 0, 0, 0, 1, 0]],
+	['pressure', [-1, 1, -2, 0, 0, 0, 0]],
+	['energy', [2, 1, -2, 0, 0, 0, 0]],
+	['molar energy', [2, 1, -2, 0, 0, -1, 0]],
+	['molar heat capacity', [2, 1, -2, 0, -1, -1, 0]],
+	['heat capacity', [2, 1, -2, 0, -1, 0, 0]],
+	['reciprocal temperature', [0, 0, 0, 0, -1, 0, 0]],
+	['density', [-3, 1, 0, 0, 0, 0, 0]],
+	['acceleration', [1, 0, -2, 0, 0, 0, 0]],
+	['concentration', [-3, 0, 0, 0, 0, 1, 0]],
+	['molar mass', [0, 1, 0, 0, 0, -1, 0]],
+	['rate constant', [0, 0, -1, 0, 0, 0, 0]],
+	['voltage', [2, 1, -3, -1, 0, 0, 0]]
+];
+
+/** What the dimension is called, 'pressure' say; where there is no usual name, its base units. */
+export function nameDimension(dimension: Dimension): string {
+	const known = named.find(([, candidate]) => sameDimension(candidate, dimension));
+	if (known) return known[0];
+	const factors = baseUnits.flatMap((unit, i) => {
+		const exponent = dimension[i] ?? 0;
+		return exponent === 0 ? [] : [exponent === 1 ? unit : `${unit}^${exponent}`];
+	});
+	return `quantity in ${factors.join(' ')}`;
+}
+
+/** The same with its article: 'a pressure', 'an energy'. */
+export function nameDimensionWithArticle(dimension: Dimension): string {
+	const name = nameDimension(dimension);
+	return `${/^[aeiou]/.test(name) ? 'an' : 'a'} ${name}`;
+}

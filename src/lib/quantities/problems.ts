@@ -1,0 +1,19 @@
+export type QuantityProblemCode =
+	| 'unknown-unit'
+	| 'ambiguous-unit'
+	| 'unit-dimension'
+	| 'dimension'
+	| 'temperature-points'
+	| 'domain'
+	| 'not-finite';
+
+/** Something that cannot be computed, said in words a student understands. The only error that this module throws. */
+export class QuantityProblem extends Error {
+	override readonly name = 'QuantityProblem';
+	constructor(
+		readonly code: QuantityProblemCode,
+		message: string
+	) {
+		super(message);
+	}
+}

@@ -1,0 +1,198 @@
+import {
+	dimensionless,
+	sameDimension,
+	nameDimensionWithArticle,
+	nameDimension,
+	type Dimension
+} from './dimension';
+import { QuantityProblem } from './problems';
+import { intervalUnit, unitOne, type Unit } from './units';
+
+/** How far one deviation reaches: 'reading' is drawn anew each time, everything else is shared by all rows. */
+export type Scope = 'reading' | 'run' | 'instrument' | 'session' | 'course';
+
+/**
+ * A component of uncertainty: one variance estimate with its degrees of freedom (Infinity when it is not an
+ * estimate). Several sources may rest on it: the same thermometer's reading error in every row, or the two
+ * independent parts of a fit's scatter. It is one line of a budget and one Welch-Satterthwaite term.
+ */
+export interface Component {
+	readonly id: string;
+	readonly label: string;
+	readonly scope: Scope;
+	readonly degreesOfFreedom: number;
+}
+
+/** One independent deviation. Sources are told apart by identity: the same object is the same deviation. */
+export interface Source {
+	readonly component: Component;
+}
+
+/** Source -> derivative towards it times its standard uncertainty, in the SI unit of the quantity. Zeros are left out. */
+export type LinearParts = ReadonlyMap<Source, number>;
+
+/** A value in its coherent SI unit with the linear parts of its uncertainty. */
+export interface Quantity {
+	readonly value: number;
+	readonly dimension: Dimension;
+	/** the unit it is told in */
+	readonly unit: Unit;
+	/** a point on a scale of temperature (25 degC), not a difference of temperatures (25 K) */
+	readonly point: boolean;
+	readonly parts: LinearParts;
+}
+
+export interface Uncertainty {
+	/** combined standard uncertainty, SI */
+	readonly standard: number;
+	/** effective, by Welch-Satterthwaite; Infinity when nothing was estimated from scatter */
+	readonly degreesOfFreedom: number;
+}
+
+const noParts: LinearParts = new Map();
+
+/** A quantity without uncertainty. `value` is in `unit`; on a scale of temperature it is a point. */
+export function exactly(value: number, unit: Unit = unitOne): Quantity {
+	return {
+		value: value * unit.factor + unit.offset,
+		dimension: unit.dimension,
+		unit,
+		point: unit.offset !== 0,
+		parts: noParts
+	};
+}
+
+/** Adds deviations to a quantity: pairs of a source and its standard uncertainty in the quantity's SI unit. */
+export function withDeviations(
+	quantity: Quantity,
+	deviations: Iterable<readonly [Source, number]>
+): Quantity {
+	const parts = new Map(quantity.parts);
+	for (const [source, size] of deviations) addPart(parts, source, size);
+	return { ...quantity, parts };
+}
+
+export function addPart(parts: Map<Source, number>, source: Source, size: number): void {
+	const sum = (parts.get(source) ?? 0) + size;
+	if (sum === 0) parts.delete(source);
+	else parts.set(source, sum);
+}
+
+/**
+ * The one place where uncertainty propagates (GUM 5.2.2 in its linear-part form): every operation and every fit
+ * gives its value and its derivatives towards its inputs. Correlations take care of themselves, because parts of
+ * the same source add before they are squared; so x - x has no uncertainty at all.
+ */
+export function propagate(
+	value: number,
+	dimension: Dimension,
+	inputs: Iterable<readonly [Quantity, number]>,
+	unit: Unit,
+	point = false
+): Quantity {
+	if (!Number.isFinite(value)) throw new QuantityProblem('not-finite', 'The result is not a finite number.');
+	const parts = new Map<Source, number>();
+	for (const [input, derivative] of inputs) {
+		if (derivative === 0) continue;
+		for (const [source, part] of input.parts) addPart(parts, source, derivative * part);
+	}
+	return { value, dimension, unit, point, parts };
+}
+
+/** Tells the quantity in another unit of the same dimension; the value itself does not change. */
+export function toldIn(quantity: Quantity, unit: Unit): Quantity {
+	if (!sameDimension(quantity.dimension, unit.dimension)) {
+		throw new QuantityProblem(
+			'dimension',
+			`${capitalise(nameDimension(unit.dimension))} wanted; this is ${nameDimensionWithArticle(quantity.dimension)}.`
+		);
+	}
+	if (unit.offset !== 0 && !quantity.point) {
+		// An absolute temperature computed in kelvins is a point; whether a sum of differences is, nobody can know here.
+		return { ...quantity, unit, point: true };
+	}
+	return { ...quantity, unit };
+}
+
+/** The value in its own unit. */
+export function valueIn(quantity: Quantity, unit: Unit = quantity.unit): number {
+	return (quantity.value - unit.offset) / unit.factor;
+}
+
+/** A standard uncertainty (or any difference), SI, in the given unit. */
+export function differenceIn(size: number, unit: Unit): number {
+	return size / intervalUnit(unit).factor;
+}
+
+export function covariance(a: Quantity, b: Quantity): number {
+	const [few, many] = a.parts.size <= b.parts.size ? [a.parts, b.parts] : [b.parts, a.parts];
+	let sum = 0;
+	for (const [source, part] of few) sum += part * (many.get(source) ?? 0);
+	return sum;
+}
+
+export function variance(quantity: Quantity): number {
+	let sum = 0;
+	for (const part of quantity.parts.values()) sum += part * part;
+	return sum;
+}
+
+export function standardUncertainty(quantity: Quantity): number {
+	return Math.sqrt(variance(quantity));
+}
+
+/** Variance by component, in the order in which the components came in. */
+export function componentVariances(parts: LinearParts): Map<Component, number> {
+	const sums = new Map<Component, number>();
+	for (const [{ component }, part] of parts) sums.set(component, (sums.get(component) ?? 0) + part * part);
+	return sums;
+}
+
+/**
+ * Combined standard uncertainty and effective degrees of freedom (GUM G.4.1), one term for each variance estimate:
+ * slope and intercept of one fit rest on the same residual scatter and count once.
+ */
+export function combinedUncertainty(quantity: Quantity): Uncertainty {
+	return combineVariances(componentVariances(quantity.parts));
+}
+
+export function combineVariances(variances: ReadonlyMap<Component, number>): Uncertainty {
+	let total = 0;
+	for (const size of variances.values()) total += size;
+	if (total === 0) return { standard: 0, degreesOfFreedom: Infinity };
+	let denominator = 0;
+	for (const [component, size] of variances) {
+		const share = size / total;
+		if (component.degreesOfFreedom !== Infinity) denominator += (share * share) / component.degreesOfFreedom;
+	}
+	return { standard: Math.sqrt(total), degreesOfFreedom: denominator === 0 ? Infinity : 1 / denominator };
+}
+
+export interface BudgetEntry {
+	readonly component: Component;
+	/** standard uncertainty that it contributes, SI */
+	readonly contribution: number;
+	/** of the variance; all shares add to 1 */
+	readonly share: number;
+}
+
+/** Which component contributes how much, largest first. */
+export function budget(quantity: Quantity): BudgetEntry[] {
+	const variances = [...componentVariances(quantity.parts)];
+	const total = variances.reduce((sum, [, size]) => sum + size, 0);
+	return variances
+		.map(([component, size]) => ({ component, contribution: Math.sqrt(size), share: size / total }))
+		.sort((a, b) => b.share - a.share);
+}
+
+export function isExact(quantity: Quantity): boolean {
+	return quantity.parts.size === 0;
+}
+
+export function plainNumber(value: number): Quantity {
+	return { value, dimension: dimensionless, unit: unitOne, point: false, parts: noParts };
+}
+
+function capitalise(words: string): string {
+	return words.charAt(0).toUpperCase() + words.slice(1);
+}

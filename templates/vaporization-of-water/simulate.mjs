@@ -1,0 +1,86 @@
+// Readings of an invented run, from the physics with a seeded random generator: nothing in example/ was measured or
+// copied. Run `node templates/vaporization-of-water/simulate.mjs` to write example/ again.
+import { writeFileSync } from 'node:fs';
+import { fileURLToPath } from 'node:url';
+
+const pascalsPerTorr = 101325 / 760;
+
+/** Saturation pressure of water in Pa: Wagner and Pruss 1993, the auxiliary equation of IAPWS SR1-86(1992). */
+export function saturationPressure(kelvins) {
+	const tau = 1 - kelvins / 647.096;
+	const terms = [
+		[-7.85951783, 1],
+		[1.84408259, 1.5],
+		[-11.7866497, 3],
+		[22.6807411, 3.5],
+		[-15.9618719, 4],
+		[1.80122502, 7.5]
+	];
+	const sum = terms.reduce((total, [a, power]) => total + a * tau ** power, 0);
+	return 22.064e6 * Math.exp((647.096 / kelvins) * sum);
+}
+
+/** Temperature in K at which water boils under the pressure in Pa, by bisection. */
+export function boilingTemperature(pascals) {
+	let low = 273.16;
+	let high = 450;
+	while (high - low > 1e-9) {
+		const middle = (low + high) / 2;
+		if (saturationPressure(middle) < pascals) low = middle;
+		else high = middle;
+	}
+	return (low + high) / 2;
+}
+
+/** Uniform numbers from 0 to 1 (32-bit linear congruential generator scrambled by multiplication and shifts). */
+export function uniform(seed) {
+	let state = seed >>> 0;
+	return () => {
+		state = (Math.imul(state, 1664525) + 1013904223) >>> 0;
+		let mixed = state ^ (state >>> 15);
+		mixed = Math.imul(mixed | 1, mixed ^ 0x2c1b3c6d);
+		mixed ^= mixed >>> 13;
+		return ((mixed ^ (mixed >>> 16)) >>> 0) / 4294967296;
+	};
+}
+
+function normal(random) {
+	const radius = Math.sqrt(-2 * Math.log(1 - random()));
+	return radius * Math.cos(2 * Math.PI * random());
+}
+
+/**
+ * One run: ten pressures from 400 to 760 torr, read with noise of 0.1 K and 0.5 torr on a thermometer and a gauge
+ * whose own offsets (0.2 K, 0.3 torr, standard deviations) are the same in every row.
+ */
+export function simulate({
+	seed,
+	noiseKelvins = 0.1,
+	noiseTorr = 0.5,
+	thermometerKelvins = 0.2,
+	gaugeTorr = 0.3
+}) {
+	const random = uniform(seed);
+	const thermometer = thermometerKelvins * normal(random);
+	const gauge = gaugeTorr * normal(random);
+	const rows = Array.from({ length: 10 }, (_, i) => {
+		const torr = 400 + 40 * i + 3 * (random() - 0.5);
+		const celsius = boilingTemperature(torr * pascalsPerTorr) - 273.15;
+		return {
+			t: (celsius + thermometer + noiseKelvins * normal(random)).toFixed(2),
+			p: (torr + gauge + noiseTorr * normal(random)).toFixed(1),
+			note: ''
+		};
+	});
+	return { parameters: { p_b: (757 + 6 * (random() - 0.5)).toFixed(1) }, rows };
+}
+
+const exampleSeed = 310;
+
+if (process.argv[1] === fileURLToPath(import.meta.url)) {
+	const { parameters, rows } = simulate({ seed: exampleSeed });
+	const lines = ['t / °C,p / Torr,note', ...rows.map(({ t, p, note }) => [t, p, note].join(','))];
+	const folder = new URL('./example/', import.meta.url);
+	writeFileSync(new URL('readings.csv', folder), lines.join('\n') + '\n');
+	writeFileSync(new URL('parameters.json', folder), JSON.stringify(parameters, null, '\t') + '\n');
+}

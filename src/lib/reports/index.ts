@@ -22,3 +22,10 @@ export {
 	type FragmentSelector
 } from './anchors';
 export { compareResults, shownResults, type ResultDifference, type ShownResult } from './shown-results';
+export { statedValues, type StatedNumber } from './stated';
+export { compareStated, type StatedLine } from './compare';
+export { parseUnit, type UnitForm } from './units';
+export { checkReport, type CheckedSection } from './checks';
+export { suggestLinks, suggestForNumber, type LinkSuggestion } from './suggest';
+export { sectionTree, countWords, type OutlineEntry, type SectionNode } from './outline';
+export { explainUnknown, placedLabel } from './links';

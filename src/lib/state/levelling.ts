@@ -124,82 +124,108 @@ type Form = LevelledEntry['form'];
 
 /**
  * Levels the entries of one margin. Where a crowd stands farther than `foldBeyond` from its lines, its least urgent
- * entries fold to a line; when that is not enough, the folded ones of a block gather into "5 more on 3.1".
- * The active entry and opened blocks stay whole. Ties of urgency fold the younger first.
+ * entries fold to a line; when that is not enough, the folded ones of a block gather into "5 more on 3.1". What turns
+ * out to have room after all unfolds again, most urgent first. The active entry and opened blocks stay whole.
  */
 export function levelEntries(entries: readonly LevelEntry[], rules: LevelRules): LevelledEntry[] {
 	const order = [...entries].sort((a, b) => a.wanted - b.wanted || a.age - b.age || (a.id < b.id ? -1 : 1));
 	const forms: Form[] = order.map(() => 'full');
 	const more: number[] = order.map(() => 1);
 
+	let margin = standing(order, forms, rules);
 	for (;;) {
-		const shown = order.flatMap((entry, index) => (forms[index] === 'hidden' ? [] : [{ entry, index }]));
-		const { tops, runs } = levelTops(
-			shown.map(({ entry, index }, place) => {
-				const next = shown[place + 1];
-				const whole = forms[index] === 'full';
-				const nextWhole = next === undefined || forms[next.index] === 'full';
-				return {
-					wanted: entry.wanted,
-					height:
-						(whole ? entry.height : Math.min(entry.height, rules.lineHeight)) +
-						(whole || nextWhole ? rules.gap : rules.lineGap),
-					weight: entry.active ? rules.activeWeight : 1
-				};
-			})
-		);
-		const displacements = shown.map(({ entry }, place) => (tops[place] ?? 0) - entry.wanted);
-		const crowd = worstCrowd(runs, displacements, rules.foldBeyond);
-		if (crowd !== null) {
-			const members = shown.slice(crowd[0], crowd[1] + 1);
-			if (foldOne(members, forms, rules) || gatherOne(members, forms, more)) continue;
-			// Nothing more to fold here; the others are still served below, so look past this crowd.
-			const other = runs.find((run) => {
-				if (run === crowd) return false;
-				const far = displacements.slice(run[0], run[1] + 1).some((d) => Math.abs(d) > rules.foldBeyond);
-				const group = shown.slice(run[0], run[1] + 1);
-				return far && (foldOne(group, forms, rules) || gatherOne(group, forms, more));
-			});
-			if (other !== undefined) continue;
-		}
-		const places = new Map(shown.map(({ index }, place) => [index, place]));
-		let lastTop = 0;
-		return order.map((entry, index) => {
-			const place = places.get(index);
-			if (place !== undefined) lastTop = tops[place] ?? 0;
-			return {
-				id: entry.id,
-				top: lastTop,
-				displaced: place === undefined ? 0 : (displacements[place] ?? 0),
-				form: forms[index] ?? 'full',
-				more: more[index] ?? 1
-			};
+		// A crowd in which nothing is left to fold must not keep the others from being served.
+		const crowds = farCrowds(margin, rules.foldBeyond);
+		const eased = crowds.some(([first, last]) => {
+			const members = margin.shown.slice(first, last + 1);
+			return foldOne(members, forms, rules) || gatherOne(members, forms, more);
 		});
+		if (!eased) break;
+		margin = standing(order, forms, rules);
 	}
-}
+	margin = unfoldWhatFits(order, forms, rules, margin);
 
-function worstCrowd(
-	runs: [number, number][],
-	displacements: readonly number[],
-	foldBeyond: number
-): [number, number] | null {
-	let worst: [number, number] | null = null;
-	let farthest = foldBeyond;
-	for (const run of runs) {
-		for (let place = run[0]; place <= run[1]; place++) {
-			const distance = Math.abs(displacements[place] ?? 0);
-			if (distance > farthest) {
-				farthest = distance;
-				worst = run;
-			}
-		}
-	}
-	return worst;
+	const places = new Map(margin.shown.map(({ index }, place) => [index, place]));
+	let lastTop = 0;
+	return order.map((entry, index) => {
+		const place = places.get(index);
+		if (place !== undefined) lastTop = margin.tops[place] ?? 0;
+		return {
+			id: entry.id,
+			top: lastTop,
+			displaced: place === undefined ? 0 : (margin.displaced[place] ?? 0),
+			form: forms[index] ?? 'full',
+			more: more[index] ?? 1
+		};
+	});
 }
 
 interface Member {
 	entry: LevelEntry;
+	/** place in the order of all entries */
 	index: number;
+}
+
+interface Margin {
+	/** what is not spoken for by another */
+	shown: Member[];
+	tops: number[];
+	displaced: number[];
+	runs: [number, number][];
+}
+
+/** Where everything stands with these forms. */
+function standing(order: readonly LevelEntry[], forms: readonly Form[], rules: LevelRules): Margin {
+	const shown = order.flatMap((entry, index) => (forms[index] === 'hidden' ? [] : [{ entry, index }]));
+	const boxes = shown.map(({ entry, index }, place) => {
+		const next = shown[place + 1];
+		const whole = forms[index] === 'full';
+		const nextWhole = next === undefined || forms[next.index] === 'full';
+		return {
+			wanted: entry.wanted,
+			height:
+				(whole ? entry.height : Math.min(entry.height, rules.lineHeight)) +
+				(whole || nextWhole ? rules.gap : rules.lineGap),
+			weight: entry.active ? rules.activeWeight : 1
+		};
+	});
+	const { tops, runs } = levelTops(boxes);
+	return { shown, tops, displaced: shown.map(({ entry }, place) => (tops[place] ?? 0) - entry.wanted), runs };
+}
+
+/** Crowds with a member too far from its line, the worst first. */
+function farCrowds({ runs, displaced }: Margin, foldBeyond: number): [number, number][] {
+	return runs
+		.map((run) => ({
+			run,
+			farthest: Math.max(...displaced.slice(run[0], run[1] + 1).map(Math.abs))
+		}))
+		.filter(({ farthest }) => farthest > foldBeyond)
+		.sort((a, b) => b.farthest - a.farthest)
+		.map(({ run }) => run);
+}
+
+function unfoldWhatFits(
+	order: readonly LevelEntry[],
+	forms: Form[],
+	rules: LevelRules,
+	folded: Margin
+): Margin {
+	let margin = folded;
+	const far = farCrowds(margin, rules.foldBeyond).length;
+	const lines = order
+		.flatMap((entry, index) => (forms[index] === 'line' ? [{ entry, index }] : []))
+		.sort((a, b) => b.entry.urgency - a.entry.urgency || a.entry.age - b.entry.age || a.index - b.index);
+	for (const { index } of lines) {
+		forms[index] = 'full';
+		const tried = standing(order, forms, rules);
+		const place = tried.shown.findIndex((member) => member.index === index);
+		const crowds = farCrowds(tried, rules.foldBeyond);
+		const crowded = crowds.some(([first, last]) => first <= place && place <= last);
+		if (crowded || crowds.length > far) forms[index] = 'line';
+		else margin = tried;
+	}
+	return margin;
 }
 
 /** Folds the least urgent, youngest whole entry of a crowd; false when none can fold. */

@@ -1,0 +1,1 @@
+export { start, type Tasks } from './start';

@@ -1,0 +1,17 @@
+import { redirect } from '@sveltejs/kit';
+import * as accounts from '$lib/server/accounts';
+import { dropSession } from '$lib/server/requests';
+import type { Actions, PageServerLoad } from './$types';
+
+export const load: PageServerLoad = ({ locals }) => {
+	if (!locals.viewer) redirect(303, '/sign-in');
+	return { name: locals.viewer.name };
+};
+
+export const actions: Actions = {
+	default: async ({ locals, cookies }) => {
+		if (locals.viewer && locals.session) await accounts.signOut({ viewer: locals.viewer }, locals.session);
+		dropSession(cookies);
+		redirect(303, '/sign-in');
+	}
+};

@@ -21,7 +21,7 @@ const statuses: Record<RefusalKind, { status: number; title: string }> = {
 
 const problemMedia = { 'content-type': 'application/problem+json' };
 
-function problemResponse(details: ProblemDetails, headers: Record<string, string> = {}): Response {
+export function problemResponse(details: ProblemDetails, headers: Record<string, string> = {}): Response {
 	return json(details, { status: details.status, headers: { ...problemMedia, ...headers } });
 }
 

@@ -26,7 +26,9 @@ const bytes = z
 		const factor = { K: 1024, M: 1024 ** 2, G: 1024 ** 3 }[written.slice(-1).toUpperCase()] ?? 1;
 		return Number.parseInt(written, 10) * factor;
 	});
-const origin = address(['http:', 'https:']).refine((written) => new URL(written).origin === written);
+const origin = address(['http:', 'https:']).refine(
+	(written) => URL.canParse(written) && new URL(written).origin === written
+);
 const count = (from: number, to: number) =>
 	z
 		.string()

@@ -3,6 +3,7 @@ export { openReport, openSheet } from './open-report';
 export { showReport } from './show-report';
 export { showSnapshot } from './show-snapshot';
 export { readSnapshot, DamagedSnapshotError } from './read-snapshot';
+export { storeSnapshot, type StoredSnapshot } from './store-snapshot';
 export { recompute, type Recomputed } from './recompute';
 export { factsOf, stateFacts, stateForAuthor, stateOf, statesOf, type StateFacts } from './state';
 export { reportById, reportOf, lockReport, type ReportRow } from './report-row';

@@ -1,0 +1,16 @@
+export { openSitting } from './open-sitting';
+export { readSitting } from './read-sitting';
+export { tonight, type ToMark } from './tonight';
+export { openSheet, type MarkingSheet } from './sheet';
+export { openMarking } from './open-marking';
+export { readMarking } from './read-marking';
+export { setLevel } from './set-level';
+export { addRemark } from './add-remark';
+export { reviseRemark } from './revise-remark';
+export { deleteRemark } from './delete-remark';
+export { finishMarking, reopenMarking } from './finish-marking';
+export { dropKeptRemark, keepRemark, listKeptRemarks, useKeptRemark } from './kept-remarks';
+export { replyToRemark } from './reply-to-remark';
+export { returned, type Returned, type ReturnedReport } from './returned';
+export { firstName, labelOf } from './label';
+export { levelsOfMany, rubricOfMarking, totalOf } from './state';

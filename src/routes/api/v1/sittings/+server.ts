@@ -1,0 +1,5 @@
+import { marking as contracts } from '$lib/contracts';
+import { endpoint } from '$lib/server/http';
+import * as marking from '$lib/server/marking';
+
+export const POST = endpoint(contracts.openSitting, ({ act, body }) => marking.openSitting(act, body));

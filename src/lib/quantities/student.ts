@@ -18,44 +18,54 @@ function logGamma(x: number): number {
 	return (z - 0.5) * ln(z) - z + 0.9189385332046728 + series - ln(shift);
 }
 
-/** Regularised incomplete beta function by Lentz's continued fraction (Abramowitz and Stegun 26.5.8). */
-function incompleteBeta(x: number, a: number, b: number): number {
-	if (x <= 0) return 0;
-	if (x >= 1) return 1;
-	if (x > (a + 1) / (a + b + 2)) return 1 - incompleteBeta(1 - x, b, a);
-	const front = exp(a * ln(x) + b * ln(1 - x) + logGamma(a + b) - logGamma(a) - logGamma(b)) / a;
+/**
+ * Lentz's continued fraction of the incomplete beta function (Abramowitz and Stegun 26.5.8); the function itself is
+ * this times x^a (1 - x)^b / (a B(a, b)). Converges fast for x below (a + 1) / (a + b + 2).
+ */
+function betaFraction(x: number, a: number, b: number): number {
 	const tiny = 1e-300;
+	const away = (value: number) => (Math.abs(value) < tiny ? tiny : value);
 	let c = 1;
-	let d = 1 - ((a + b) * x) / (a + 1);
-	d = 1 / (Math.abs(d) < tiny ? tiny : d);
+	let d = 1 / away(1 - ((a + b) * x) / (a + 1));
 	let value = d;
 	for (let m = 1; m <= 10_000; m += 1) {
 		const even = (m * (b - m) * x) / ((a + 2 * m - 1) * (a + 2 * m));
-		d = 1 + even * d;
-		c = 1 + even / c;
-		d = 1 / (Math.abs(d) < tiny ? tiny : d);
-		if (Math.abs(c) < tiny) c = tiny;
+		d = 1 / away(1 + even * d);
+		c = away(1 + even / c);
 		value *= d * c;
 		const odd = (-(a + m) * (a + b + m) * x) / ((a + 2 * m) * (a + 2 * m + 1));
-		d = 1 + odd * d;
-		c = 1 + odd / c;
-		d = 1 / (Math.abs(d) < tiny ? tiny : d);
-		if (Math.abs(c) < tiny) c = tiny;
+		d = 1 / away(1 + odd * d);
+		c = away(1 + odd / c);
 		const step = d * c;
 		value *= step;
-		if (Math.abs(step - 1) < 1e-16) break;
+		if (Math.abs(step - 1) < 2e-16) break;
 	}
-	return front * value;
+	return value;
 }
 
-/** Probability of a |t| above the given one. */
-function twoTailed(t: number, degreesOfFreedom: number): number {
-	return incompleteBeta(degreesOfFreedom / (degreesOfFreedom + t * t), degreesOfFreedom / 2, 0.5);
-}
+/** Student's distribution for one nu: the gamma functions are worked out once, not at every t. */
+class StudentDistribution {
+	private readonly logBeta: number;
 
-function density(t: number, nu: number): number {
-	const logScale = logGamma((nu + 1) / 2) - logGamma(nu / 2) - 0.5 * ln(nu * 3.141592653589793);
-	return exp(logScale - ((nu + 1) / 2) * ln(1 + (t * t) / nu));
+	constructor(private readonly nu: number) {
+		// ln B(nu/2, 1/2); ln gamma(1/2) = ln(pi)/2
+		this.logBeta = logGamma(nu / 2) + 0.5723649429247001 - logGamma((nu + 1) / 2);
+	}
+
+	/** Probability of a |t| above the given one. */
+	outside(t: number): number {
+		const { nu } = this;
+		const [a, b] = [nu / 2, 0.5];
+		const x = nu / (nu + t * t);
+		const rest = (t * t) / (nu + t * t);
+		const front = exp(a * ln(x) + b * ln(rest) - this.logBeta);
+		if (x < (a + 1) / (a + b + 2)) return (front * betaFraction(x, a, b)) / a;
+		return 1 - (front * betaFraction(rest, b, a)) / b;
+	}
+
+	density(t: number): number {
+		return exp(-this.logBeta - 0.5 * ln(this.nu) - ((this.nu + 1) / 2) * ln(1 + (t * t) / this.nu));
+	}
 }
 
 /** From here on Fisher's expansion about the normal quantile is exact to rounding, and the gamma functions lose digits. */
@@ -71,29 +81,42 @@ function fisherExpansion(z: number, nu: number): number {
 	return (((fourth / nu + third) / nu + second) / nu + first) / nu;
 }
 
-/** The factor k for a two-sided interval of the given coverage, e.g. 0.95; degreesOfFreedom may be fractional or Infinity. */
-export function coverageFactor(coverage: number, degreesOfFreedom: number): number {
-	if (degreesOfFreedom <= manyDegreesOfFreedom) return quantileByNewton(coverage, degreesOfFreedom);
-	const known = quantileByNewton(coverage, manyDegreesOfFreedom);
+/** Normal quantiles by coverage: worked out once for each coverage, which is nearly always 0.95. */
+const normalQuantiles = new Map<number, number>();
+
+function normalQuantile(coverage: number): number {
+	const kept = normalQuantiles.get(coverage);
+	if (kept !== undefined) return kept;
+	const known = quantileByNewton(coverage, manyDegreesOfFreedom, 1);
 	let z = known;
 	for (let i = 0; i < 20; i += 1) z = known - fisherExpansion(z, manyDegreesOfFreedom);
-	return degreesOfFreedom === Infinity ? z : z + fisherExpansion(z, degreesOfFreedom);
+	normalQuantiles.set(coverage, z);
+	return z;
 }
 
-function quantileByNewton(coverage: number, nu: number): number {
-	const outside = 1 - coverage;
+/** The factor k for a two-sided interval of the given coverage, e.g. 0.95; degreesOfFreedom may be fractional or Infinity. */
+export function coverageFactor(coverage: number, degreesOfFreedom: number): number {
+	const z = normalQuantile(coverage);
+	if (degreesOfFreedom === Infinity) return z;
+	const near = z + fisherExpansion(z, degreesOfFreedom);
+	return degreesOfFreedom > manyDegreesOfFreedom ? near : quantileByNewton(coverage, degreesOfFreedom, near);
+}
+
+function quantileByNewton(coverage: number, nu: number, start: number): number {
+	const student = new StudentDistribution(nu);
+	const wanted = 1 - coverage;
 	let low = 0;
-	let high = 1;
-	while (twoTailed(high, nu) > outside && high < 1e12) high *= 2;
-	let t = high / 2;
+	let high = Infinity;
+	let t = start;
 	// Newton, kept inside a bracket so that heavy tails (nu below 1) cannot throw it out
-	for (let i = 0; i < 200; i += 1) {
-		const excess = twoTailed(t, nu) - outside;
+	for (let i = 0; i < 400; i += 1) {
+		const excess = student.outside(t) - wanted;
 		if (excess > 0) low = t;
 		else high = t;
-		const newton = t + excess / (2 * density(t, nu));
-		const next = newton > low && newton < high ? newton : (low + high) / 2;
-		if (Math.abs(next - t) <= 1e-15 * Math.abs(next)) return next;
+		const newton = t + excess / (2 * student.density(t));
+		const inside = newton > low && newton < high;
+		const next = inside ? newton : high === Infinity ? 2 * t : (low + high) / 2;
+		if (Math.abs(next - t) <= 1e-14 * Math.abs(next)) return next;
 		t = next;
 	}
 	return t;

@@ -99,14 +99,34 @@ export function composeUnit(factors: readonly UnitFactor[]): Unit {
 	return { factors: kept, factor: numerator / denominator, offset, dimension };
 }
 
+const quotients = new WeakMap<Unit, WeakMap<Unit, Unit>>();
+const products = new WeakMap<Unit, WeakMap<Unit, Unit>>();
+
 export function divideUnits(a: Unit, b: Unit): Unit {
-	return composeUnit(
-		[...a.factors, ...b.factors.map((factor) => ({ ...factor, exponent: -factor.exponent }))].map(asInterval)
-	);
+	return remembered(quotients, a, b, () => [
+		...a.factors,
+		...b.factors.map((factor) => ({ ...factor, exponent: -factor.exponent }))
+	]);
 }
 
 export function multiplyUnits(a: Unit, b: Unit): Unit {
-	return composeUnit([...a.factors, ...b.factors].map(asInterval));
+	return remembered(products, a, b, () => [...a.factors, ...b.factors]);
+}
+
+/** The same few units meet in every row of a table, so each pair is put together once. */
+function remembered(
+	store: WeakMap<Unit, WeakMap<Unit, Unit>>,
+	a: Unit,
+	b: Unit,
+	factors: () => UnitFactor[]
+): Unit {
+	const row = store.get(a) ?? new WeakMap<Unit, Unit>();
+	store.set(a, row);
+	const known = row.get(b);
+	if (known) return known;
+	const unit = composeUnit(factors().map(asInterval));
+	row.set(b, unit);
+	return unit;
 }
 
 /** A degree of a scale inside a product is an interval, hence a kelvin. */
@@ -116,7 +136,7 @@ function asInterval(factor: UnitFactor): UnitFactor {
 
 /** The unit in which differences and uncertainties are told: kelvins for a temperature in degrees Celsius. */
 export function intervalUnit(unit: Unit): Unit {
-	return unit.offset === 0 ? unit : composeUnit(unit.factors.map(asInterval));
+	return unit.offset === 0 ? unit : multiplyUnits(unit, unitOne);
 }
 
 /** A coherent SI unit of the dimension, for what has no unit of its own. */

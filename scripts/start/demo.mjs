@@ -68,4 +68,4 @@ export async function demoAccounts() {
 	return accounts ?? [];
 }
 
-export const hasDemo = () => existsSync(join(root, 'scripts/demo.ts'));
+export const hasDemo = () => existsSync(join(root, 'scripts/demo/load.ts'));

@@ -1,4 +1,4 @@
-import { loadDemo } from '../demo';
+import { loadDemo } from '../demo/load';
 
 await loadDemo();
 // Pools the verbs opened would keep the process waiting.

@@ -1,0 +1,89 @@
+import type { Persona, Scene, Stage } from './permission-table';
+
+export interface PageRow {
+	stage: Stage;
+	params?: (scene: Scene) => Record<string, string>;
+	answers: Partial<Record<Persona, number>> & { else: number };
+}
+
+/** Signed out: sent to the door. Signed in and not yours: not here. */
+const closed = { nobody: 303, else: 404 } as const;
+const open = { else: 200 } as const;
+const course = (s: Scene) => ({ course: s.slug });
+const work = (s: Scene) => ({ course: s.slug, work: s.workId });
+const everyMember = {
+	...closed,
+	student: 200,
+	mate: 200,
+	otherStudent: 200,
+	grader: 200,
+	otherGrader: 200,
+	instructor: 200
+};
+const instructorOnly = {
+	...closed,
+	student: 403,
+	mate: 403,
+	otherStudent: 403,
+	grader: 403,
+	otherGrader: 403,
+	instructor: 200
+};
+const graderOnly = {
+	...closed,
+	student: 403,
+	mate: 403,
+	otherStudent: 403,
+	grader: 200,
+	otherGrader: 200,
+	instructor: 403
+};
+const own = { ...closed, student: 200, mate: 200 };
+
+/** Route folder of every page -> who gets which answer. */
+export const pageRows: Record<string, PageRow> = {
+	'/': { stage: 'draft', answers: { else: 303 } },
+	'/(desk)/now': { stage: 'draft', answers: { nobody: 303, else: 200 } },
+	'/(desk)/account': { stage: 'draft', answers: { nobody: 303, else: 200 } },
+	'/(desk)/c/[course]': { stage: 'draft', params: course, answers: everyMember },
+	'/(desk)/c/[course]/settings/[part]': {
+		stage: 'draft',
+		params: (s) => ({ course: s.slug, part: 'people' }),
+		answers: instructorOnly
+	},
+	'/(desk)/c/[course]/returning': { stage: 'marked', params: course, answers: instructorOnly },
+	'/(desk)/c/[course]/spread': { stage: 'marked', params: course, answers: instructorOnly },
+	'/(desk)/c/[course]/sitting': { stage: 'handed in', params: course, answers: graderOnly },
+	'/(desk)/c/[course]/sitting/[alias]/[sheet]': {
+		stage: 'handed in',
+		params: (s) => ({ course: s.slug, alias: s.alias, sheet: 'report' }),
+		answers: { ...closed, student: 403, grader: 200, instructor: 403 }
+	},
+	'/(desk)/c/[course]/w/[work]/bench': {
+		stage: 'draft',
+		params: work,
+		answers: { ...own, grader: 200, instructor: 200 }
+	},
+	'/(desk)/c/[course]/w/[work]/workings': {
+		stage: 'draft',
+		params: work,
+		answers: { ...own, grader: 200, instructor: 200 }
+	},
+	'/(desk)/c/[course]/w/[work]/report': {
+		stage: 'draft',
+		params: work,
+		answers: { ...own, grader: 403, instructor: 403 }
+	},
+	'/(desk)/c/[course]/w/[work]/hand-in': {
+		stage: 'draft',
+		params: work,
+		answers: { ...own, grader: 403, instructor: 403 }
+	},
+	'/(desk)/c/[course]/w/[work]/returned': {
+		stage: 'returned',
+		params: work,
+		answers: { ...own, grader: 403, instructor: 403 }
+	},
+	'/(door)/sign-in': { stage: 'draft', answers: open },
+	'/(door)/reset': { stage: 'draft', answers: open }
+};

@@ -1,7 +1,7 @@
 import { blockNumber, type Projection } from '$lib/reports';
 
 /** What the words beneath a remark are underlined as. */
-export type AnchorKind = 'correct' | 'question' | 'note' | 'well-done';
+export type AnchorKind = 'correct' | 'question' | 'note' | 'well-done' | 'stated';
 
 interface AnchorLook {
 	/** of the remark; its first words get the element id `anchorId(id)` */

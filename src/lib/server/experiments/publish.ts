@@ -21,8 +21,9 @@ export function canonicalBytes(value: unknown): Uint8Array {
 	return Buffer.from(text, 'utf8');
 }
 
-/** A level earns level x weight points; hundredths keep the sums exact. */
-const pointsHundredths = (level: number, weight: number) => Math.round(level * weight * 100);
+/** The highest level earns the criterion's whole weight, the others their share; hundredths keep the sums exact. */
+const pointsHundredths = (level: number, top: number, weight: number) =>
+	Math.round((level / top) * weight * 100);
 
 async function publishRubric(tx: Transaction, slug: string, rubric: Rubric): Promise<string> {
 	await tx.insert(rubrics).values({ id: uuidv7(), slug, title: rubric.title }).onConflictDoNothing();
@@ -40,21 +41,20 @@ async function publishRubric(tx: Transaction, slug: string, rubric: Rubric): Pro
 		.values({ id: versionId, rubricId: parent.id, n: (newest?.n ?? 0) + 1, title: rubric.title });
 	for (const [position, criterion] of rubric.criteria.entries()) {
 		const criterionId = uuidv7();
-		await tx
-			.insert(criteria)
-			.values({
-				id: criterionId,
-				rubricVersionId: versionId,
-				key: criterion.key,
-				position,
-				title: criterion.title
-			});
+		const top = Math.max(1, ...criterion.levels.map(({ level }) => level));
+		await tx.insert(criteria).values({
+			id: criterionId,
+			rubricVersionId: versionId,
+			key: criterion.key,
+			position,
+			title: criterion.title
+		});
 		await tx.insert(levels).values(
 			criterion.levels.map(({ level, text }) => ({
 				criterionId,
 				level,
 				text,
-				pointsHundredths: pointsHundredths(level, criterion.weight)
+				pointsHundredths: pointsHundredths(level, top, criterion.weight)
 			}))
 		);
 	}

@@ -11,5 +11,8 @@ export async function readTemplate(folder: string): Promise<Worksheet> {
 	const [template, guide] = await Promise.all(
 		['template.yaml', 'guide.md'].map((file) => readFile(join(folder, file), 'utf8'))
 	);
-	return readFiles({ 'template.yaml': template ?? '', 'guide.md': guide ?? '' }, `templates/${basename(folder)}`);
+	return readFiles(
+		{ 'template.yaml': template ?? '', 'guide.md': guide ?? '' },
+		`templates/${basename(folder)}`
+	);
 }

@@ -135,7 +135,7 @@ function unitForms(unit: Unit): [string, string, string] {
 	if (text === '1') return ['', '', ''];
 	const glued = text === '%';
 	return [
-		(glued ? '' : thinSpace) + text,
+		(glued ? '' : thinSpace) + text.replace(/\^(-?\d+)/g, (_, digits: string) => raise(digits)),
 		(glued ? '' : '~') + unitTex(unit),
 		`${glued ? '' : thinSpace}<span class="unit">${unitHtml(unit)}</span>`
 	];
@@ -165,10 +165,13 @@ const raised: Readonly<Record<string, string>> = {
 	'9': '⁹'
 };
 
+/** Digits as Unicode superscripts, for plain text only: pages use markup. */
+function raise(digits: string): string {
+	return [...digits].map((sign) => raised[sign] ?? '').join('');
+}
+
 function powerText(exponent: number): string {
-	return exponent === 0
-		? ''
-		: `${thinSpace}×${thinSpace}10${[...String(exponent)].map((sign) => raised[sign] ?? '').join('')}`;
+	return exponent === 0 ? '' : `${thinSpace}×${thinSpace}10${raise(String(exponent))}`;
 }
 
 function powerTex(exponent: number): string {

@@ -9,19 +9,17 @@ function symbolText({ base, prefix }: UnitFactor): string {
 	return prefixText + (entryOf(base).text ?? base);
 }
 
-/** As people type it: 'kJ/mol', 'J/(mol K)', '1/K', '1' for a number. */
+/** As people type it: 'kJ/mol', 'J/(mol K)', 'K^-1', 'm^3', '1' for a number. `parseUnit` reads it back. */
 export function unitText(unit: Unit): string {
 	const write = (factor: UnitFactor, exponent: number) =>
-		symbolText(factor) + (exponent === 1 ? '' : String(exponent));
-	const above = unit.factors
-		.filter((factor) => factor.exponent > 0)
-		.map((factor) => write(factor, factor.exponent));
-	const below = unit.factors
-		.filter((factor) => factor.exponent < 0)
-		.map((factor) => write(factor, -factor.exponent));
-	const numerator = above.length === 0 ? '1' : above.join(' ');
+		symbolText(factor) + (exponent === 1 ? '' : `^${exponent}`);
+	const above = unit.factors.filter((factor) => factor.exponent > 0);
+	const below = unit.factors.filter((factor) => factor.exponent < 0);
+	if (above.length === 0) return below.map((factor) => write(factor, factor.exponent)).join(' ') || '1';
+	const numerator = above.map((factor) => write(factor, factor.exponent)).join(' ');
 	if (below.length === 0) return numerator;
-	return `${numerator}/${below.length === 1 ? below.join('') : `(${below.join(' ')})`}`;
+	const denominator = below.map((factor) => write(factor, -factor.exponent));
+	return `${numerator}/${denominator.length === 1 ? denominator.join('') : `(${denominator.join(' ')})`}`;
 }
 
 /** KaTeX source with negative exponents: '\mathrm{kJ\,mol^{-1}}'; empty for a number. */

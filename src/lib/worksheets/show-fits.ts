@@ -5,6 +5,7 @@ import {
 	intervalUnit,
 	parseUnit,
 	standardUncertainty,
+	unitText,
 	valueIn,
 	type Quantity
 } from '$lib/quantities';
@@ -80,13 +81,17 @@ export function showFigures(calculation: Calculation): Record<string, FigureData
 		figures[figure.name] = {
 			name: figure.name,
 			caption: figure.caption,
-			x: { label: x.label, symbol: x.symbol, unit: x.unit },
-			y: { label: y.label, symbol: y.symbol, unit: y.unit },
+			x: axisOf(x),
+			y: axisOf(y),
 			series: [{ label: definition.label, points: pointsOf(calculation, definition.table, x, y, fitted) }],
 			line: fitted && lineOf(fitted, x, y)
 		};
 	}
 	return figures;
+}
+
+function axisOf({ label, symbol, unit }: ColumnDefinition): FigureData['x'] {
+	return { label, symbol, unit: unitText(parseUnit(unit)) };
 }
 
 type FigurePoint = FigureData['series'][number]['points'][number];

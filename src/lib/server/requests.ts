@@ -5,6 +5,7 @@ import type { Visitor } from './accounts';
 import { blankCookie, sessionSecret } from './auth';
 import { env } from './env';
 import { Refusal } from './errors';
+import { localPathOf } from './local-path';
 
 /** Largest JSON body, bytes: a report's text or a table of 2,000 rows with its results is well below. */
 const jsonLimit = 2 * 1024 * 1024;
@@ -81,10 +82,4 @@ export const keepSession = (cookies: Cookies, cookie: Cookie): void =>
 export const dropSession = (cookies: Cookies): void => keepSession(cookies, blankCookie());
 
 /** Where to go after signing in: an address of ours, else the start. */
-export function localPath(next: string | null | undefined): string {
-	if (!next?.startsWith('/')) return '/now';
-	const { origin } = new URL(env().ORIGIN);
-	if (!URL.canParse(next, origin)) return '/now';
-	const url = new URL(next, origin);
-	return url.origin === origin ? url.pathname + url.search + url.hash : '/now';
-}
+export const localPath = (next: string | null): string => localPathOf(env().ORIGIN, next);

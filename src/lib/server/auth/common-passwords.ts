@@ -1,7 +1,7 @@
 /** What people type first, from memory; with digits, signs and repetition around them they are still the same few. */
 const stems = new Set(
 	(
-		'password passwort passw0rd p4ssword passphrase letmein welcome admin administrator root login changeme change ' +
+		'password passwort passphrase letmein welcome admin administrator root login changeme change ' +
 		'secret default guest master monkey dragon sunshine princess football baseball basketball superman batman ' +
 		'starwars pokemon iloveyou love hello hellohello qwerty qwertyuiop qwertz qwertzuiop azerty azertyuiop asdfghjkl ' +
 		'asdf zxcvbnm zxcvbn qazwsx qazwsxedc abc abcd abcdef abcdefg abcdefgh abcdefghijkl test testing temp student ' +
@@ -40,7 +40,9 @@ export function isCommonPassword(plain: string): boolean {
 	if (runs.some((run) => run.includes(plain) || run.includes(period(plain)))) return true;
 	const letters = plain.replace(/[^\p{L}]/gu, '');
 	if (letters.length === 0) return /^\D*\d{1,4}(\d)\1*\D*$/.test(plain) || new Set(plain).size < 5;
-	const undressed = [...plain]
+	// "P4ssw0rd!2026": first without what surrounds it, then digits read as the letters they stand for.
+	const core = plain.replace(/^[^\p{L}]+|[^\p{L}]+$/gu, '');
+	const undressed = [...core]
 		.map((sign) => leet[sign] ?? sign)
 		.join('')
 		.replace(/[^\p{L}]/gu, '');

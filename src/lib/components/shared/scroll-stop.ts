@@ -1,0 +1,23 @@
+import type { Attachment } from 'svelte/attachments';
+
+/**
+ * Makes a box that can be moved sideways a stop for the Tab key, named `label`, while there is something to move:
+ * one that shows everything would only be in the way.
+ */
+export function scrollStop(label: string): Attachment<HTMLElement> {
+	return (box) => {
+		const look = () => {
+			if (box.scrollWidth > box.clientWidth + 1) {
+				box.tabIndex = 0;
+				box.setAttribute('role', 'region');
+				box.setAttribute('aria-label', label);
+			} else {
+				for (const name of ['tabindex', 'role', 'aria-label']) box.removeAttribute(name);
+			}
+		};
+		const observer = new ResizeObserver(look);
+		observer.observe(box);
+		for (const child of box.children) observer.observe(child);
+		return () => observer.disconnect();
+	};
+}

@@ -1,5 +1,5 @@
 import type { Element, Root as HastRoot } from 'hast';
-import type { Definition, Nodes, Root, RootContent } from 'mdast';
+import type { Definition, Nodes, Parent, Root, RootContent } from 'mdast';
 import rehypeSanitize, { type Options as Schema } from 'rehype-sanitize';
 import remarkRehype from 'remark-rehype';
 import { unified } from 'unified';
@@ -43,7 +43,7 @@ const schema: Schema = {
 		ol: ['start'],
 		th: [['align', 'left', 'right', 'center']],
 		td: [['align', 'left', 'right', 'center']],
-		code: [['className', 'math-inline', 'math-display', /^language-[\w+#.-]{1,40}$/]],
+		code: [['className', 'math-inline', 'math-display', /^language-./]],
 		span: [
 			['className', 'linked-value', 'cross-reference', 'note-number'],
 			'dataKind',
@@ -76,7 +76,7 @@ export function composeSection(source: string): ComposedBlock[] {
 
 function compose(source: string): ComposedBlock[] {
 	const root = parseMarkdown(source);
-	const definitions = root.children.filter((node): node is Definition => node.type === 'definition');
+	const definitions = definitionsIn(root);
 	const definitionText = definitions.map((node) => sliceOf(node, source)).join('\n');
 	const notes = numberNotes(root);
 	const composed: ComposedBlock[] = [];
@@ -137,9 +137,18 @@ function isBlank(node: HastRoot['children'][number] | undefined): boolean {
 	return node?.type === 'text' && node.value.trim() === '';
 }
 
-/** Makes formulas single runs, marks outside addresses, collects links. */
+/** Makes formulas single runs, marks outside addresses, takes away refused ones, collects links. */
 function finish(parent: HastRoot | Element, links: ComposedProse['links']): void {
+	for (let index = 0; index < parent.children.length; index += 1) {
+		const child = parent.children[index];
+		// Sanitizing took an address that is neither a web nor a mail address: the words stay.
+		if (child?.type === 'element' && child.tagName === 'a' && child.properties.href === undefined) {
+			parent.children.splice(index, 1, ...child.children);
+			index -= 1;
+		}
+	}
 	parent.children.forEach((child, index) => {
+		if (child.type === 'text') child.value = asBrowsersRead(child.value);
 		if (child.type !== 'element') return;
 		const formula = formulaOf(child);
 		if (formula) {
@@ -160,6 +169,11 @@ function finish(parent: HastRoot | Element, links: ComposedProse['links']): void
 	});
 }
 
+/** Browsers read CR LF and CR as LF; positions count what they show. */
+function asBrowsersRead(text: string): string {
+	return text.replace(/\r\n?/g, '\n').replaceAll('\u0000', '\uFFFD');
+}
+
 /** A formula is one run of the text: its TeX source. */
 function formulaOf(element: Element): Element | null {
 	const inner = element.tagName === 'pre' ? element.children[0] : element;
@@ -175,9 +189,20 @@ function formulaOf(element: Element): Element | null {
 	return {
 		type: 'element',
 		tagName: display ? 'div' : 'span',
-		properties: { className: display ? ['formula', 'formula-display'] : ['formula'], dataRun: tex },
+		properties: {
+			className: display ? ['formula', 'formula-display'] : ['formula'],
+			dataRun: asBrowsersRead(tex)
+		},
 		children: []
 	};
+}
+
+/** Those inside quotes and lists too: they hold for the whole section. */
+function definitionsIn(parent: Parent): Definition[] {
+	return parent.children.flatMap((node): Definition[] => {
+		if (node.type === 'definition') return [node];
+		return 'children' in node ? definitionsIn(node) : [];
+	});
 }
 
 interface Notes {

@@ -14,7 +14,7 @@ export function formulaHtml(tex: string, display: boolean): string {
 function typeset(tex: string, display: boolean): string {
 	if (tex.length > longestFormula) return unread(tex, 'longer than 4000 characters');
 	try {
-		return katex.renderToString(tex, {
+		const html = katex.renderToString(tex, {
 			displayMode: display,
 			throwOnError: true,
 			trust: false,
@@ -23,12 +23,36 @@ function typeset(tex: string, display: boolean): string {
 			maxSize: 20,
 			output: 'htmlAndMathml'
 		});
+		const excess = excessOf(html);
+		return excess === null ? html : unread(tex, excess);
 	} catch (problem) {
 		// KaTeX's own refusals, and the stack running out on thousands of braces: the writer sees the source.
 		if (problem instanceof katex.ParseError || problem instanceof RangeError)
 			return unread(tex, reasonOf(problem));
 		throw problem;
 	}
+}
+
+/** Browsers flatten trees of 512 levels; a page has some of its own. */
+const deepestMarkup = 300;
+/** In em. `maxSize` holds for positive lengths only, and formulas must not be moved over what others wrote. */
+const longestLength = 60;
+const longestWayBack = 30;
+
+function excessOf(html: string): string | null {
+	let depth = 0;
+	let wayBack = 0;
+	for (const [tag, close, isEmpty] of html.matchAll(/<(\/)?[a-z][^>]*?(\/)?>/gi)) {
+		depth += close === undefined ? (isEmpty === undefined ? 1 : 0) : -1;
+		if (depth > deepestMarkup) return 'nested too deeply';
+		const style = / style="([^"]*)"/.exec(tag)?.[1] ?? '';
+		for (const [, property = '', length = ''] of style.matchAll(/([a-z-]+):(-?[\d.]+(?:e[+-]?\d+)?)em/g)) {
+			const size = Number(length);
+			if (!(Math.abs(size) <= longestLength)) return 'a length beyond 20 em';
+			if (property.startsWith('margin') && size < 0) wayBack -= size;
+		}
+	}
+	return wayBack > longestWayBack ? 'moved back too far' : null;
 }
 
 function unread(tex: string, reason: string): string {

@@ -11,6 +11,8 @@ const parser = unified().use(remarkParse).use(remarkGfm).use(remarkMath).use(rem
 const longestSource = 200_000;
 /** Quotes and lists inside one another. Deeper ones are taken as typed: the parser's stack and time grow with them. */
 const deepestNesting = 40;
+/** An item that far in is inside as many lists, at two columns each. */
+const deepItem = new RegExp(`^\\s{${2 * deepestNesting},}(?:[-*+]|\\d{1,9}[.)])(?:\\s|$)`);
 /** Openings of links, emphasis and the like in one paragraph, beyond which the parser's time would grow with their square. */
 const mostOpenings = 4_000;
 const mostOpeningsInAll = 20_000;
@@ -34,6 +36,7 @@ function isReasonable(source: string): boolean {
 	let openings = 0;
 	let inAll = 0;
 	for (const line of source.split('\n')) {
+		if (deepItem.test(line)) return false;
 		const lead = /^[\s>*+\-\d.)]*/.exec(line)?.[0] ?? '';
 		if ((lead.match(/[>*+-]|\d[.)]/g)?.length ?? 0) > deepestNesting && !/^[\s*_-]*$/.test(line))
 			return false;

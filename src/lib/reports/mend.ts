@@ -35,7 +35,6 @@ export function mend(parent: Parent, mending: Mending): void {
 			continue;
 		}
 		if ('children' in child && !isDone(child)) mend(child, mending);
-		else if ('value' in child && typeof child.value === 'string') child.value = plainNewlines(child.value);
 	}
 }
 
@@ -211,9 +210,4 @@ function holdsPhrasing(parent: Parent): boolean {
 		'containerDirective',
 		'containerNote'
 	].includes(type);
-}
-
-/** Browsers read CR LF and CR as LF; positions count what they show. */
-function plainNewlines(value: string): string {
-	return value.replace(/\r\n?/g, '\n').replaceAll('\u0000', '\uFFFD');
 }

@@ -29,7 +29,9 @@ export type RefusalKind =
 	/** closed, frozen, sealed */
 	| 'too-late'
 	| 'too-many'
-	| 'too-large';
+	| 'too-large'
+	/** a part that is needed does not answer; nothing was changed, later it may */
+	| 'unavailable';
 
 export interface RefusalDetail {
 	/** field path -> what is wrong and what to do */

@@ -16,7 +16,8 @@ const statuses: Record<RefusalKind, { status: number; title: string }> = {
 	stale: { status: 412, title: 'Changed in the meantime' },
 	'too-late': { status: 409, title: 'Too late' },
 	'too-many': { status: 429, title: 'Too many tries' },
-	'too-large': { status: 413, title: 'Too large' }
+	'too-large': { status: 413, title: 'Too large' },
+	unavailable: { status: 503, title: 'Not reachable just now' }
 };
 
 const problemMedia = { 'content-type': 'application/problem+json' };

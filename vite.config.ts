@@ -1,7 +1,7 @@
 import { sveltekit } from '@sveltejs/kit/vite';
 import tailwindcss from '@tailwindcss/vite';
 import { defineConfig } from 'vitest/config';
-import { liveSocket } from './scripts/live-socket';
+import { liveSocket } from './scripts/live-socket.mjs';
 
 const alias = { $lib: new URL('./src/lib', import.meta.url).pathname };
 

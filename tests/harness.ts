@@ -4,9 +4,9 @@ import { join } from 'node:path';
 import postgres from 'postgres';
 import { migrate } from '../src/lib/server/db/migrate';
 
-export { throwAwayCluster, type ThrowAwayCluster } from './throw-away';
+export { throwAwayCluster, type ThrowAwayCluster } from '../scripts/throw-away';
 export { caughtMail, forgetMail, type CaughtMail } from './mail';
-export { startServer, type RunningServer, type ServerOptions } from './running-server';
+export { builtApplication, startServer, type RunningServer, type ServerOptions } from './running-server';
 
 const migrations = new URL('../drizzle', import.meta.url).pathname;
 const grants = new URL('../src/lib/server/db/grants.ts', import.meta.url).pathname;

@@ -1,5 +1,6 @@
 import { fork } from 'node:child_process';
 import { join } from 'node:path';
+import { ensureBuild } from '../scripts/start/build.mjs';
 import { freePort } from '../scripts/start/ports.mjs';
 
 const root = new URL('..', import.meta.url).pathname;
@@ -25,10 +26,16 @@ export interface RunningServer {
 	kill(): Promise<void>;
 }
 
+/** The application built from the sources as they are; built when they changed. Takes up to a minute then. */
+export async function builtApplication(): Promise<string> {
+	const { folder } = await ensureBuild(() => undefined);
+	process.env['MENISCUS_BUILD'] = folder;
+	return folder;
+}
+
 /** Runs the built application as a process of its own on a free port; resolves when it listens. */
 export async function startServer(options: ServerOptions): Promise<RunningServer> {
-	const build = process.env['MENISCUS_BUILD'];
-	if (!build) throw new Error('There is no built application: only the browser project of vitest makes one.');
+	const build = process.env['MENISCUS_BUILD'] ?? (await builtApplication());
 	const port = await freePort(options.port);
 	const origin = `http://127.0.0.1:${port}`;
 	let output = '';
@@ -38,6 +45,7 @@ export async function startServer(options: ServerOptions): Promise<RunningServer
 		env: {
 			...process.env,
 			NODE_ENV: 'production',
+			MENISCUS_BUILD: build,
 			DATABASE_URL: options.databaseUrl,
 			HOST: '127.0.0.1',
 			PORT: String(port),

@@ -1,15 +1,17 @@
 import { randomBytes } from 'node:crypto';
-import { rmSync } from 'node:fs';
 import { join } from 'node:path';
+import type { TestProject } from 'vitest/node';
 import { startMailCatcher } from '../scripts/mail-catcher.mjs';
 import { startObjectStore } from '../scripts/object-store.mjs';
-import { sweep, throwAwayCluster, throwAwayFolder } from './throw-away';
+import { findChromium } from '../scripts/start/chromium.mjs';
+import { builtApplication } from './running-server';
+import { removeFolder, sweep, throwAwayCluster, throwAwayFolder } from '../scripts/throw-away';
 
 /** Starts what server and browser tests need, once, unless the environment already names it. */
-export async function setup(): Promise<() => Promise<void>> {
+export async function setup(project: TestProject): Promise<() => Promise<void>> {
 	const stops: (() => Promise<void>)[] = [];
 	const stopAll = async () => {
-		for (const stop of stops.reverse()) await stop();
+		for (const stop of stops.splice(0).reverse()) await stop();
 	};
 	try {
 		if (!process.env['TEST_DATABASE_OWNER_URL']) {
@@ -31,7 +33,7 @@ export async function setup(): Promise<() => Promise<void>> {
 			});
 			stops.push(async () => {
 				await store.close();
-				rmSync(folder, { recursive: true, force: true });
+				removeFolder(folder);
 			});
 			set(stops, {
 				S3_ENDPOINT: store.endpoint,
@@ -46,13 +48,19 @@ export async function setup(): Promise<() => Promise<void>> {
 			const catcher = await startMailCatcher({ folder: join(folder, 'mail') });
 			stops.push(async () => {
 				await catcher.close();
-				rmSync(folder, { recursive: true, force: true });
+				removeFolder(folder);
 			});
 			set(stops, {
 				SMTP_URL: catcher.smtpUrl,
 				MAIL_PAGE_URL: catcher.pageUrl,
 				MAIL_FROM: 'Meniscus <meniscus@example.test>'
 			});
+		}
+		if (project.name === 'browser') {
+			// Once for all files, and outside any test's time.
+			if (!process.env['MENISCUS_BUILD']) set(stops, { MENISCUS_BUILD: await builtApplication() });
+			const chromium = findChromium();
+			if (chromium && !process.env['CHROMIUM_PATH']) set(stops, { CHROMIUM_PATH: chromium });
 		}
 		if (!process.env['ORIGIN']) set(stops, { ORIGIN: 'http://127.0.0.1:4310' });
 	} catch (problem) {

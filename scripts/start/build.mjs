@@ -9,7 +9,7 @@ import {
 	statSync,
 	utimesSync
 } from 'node:fs';
-import { join } from 'node:path';
+import { basename, join } from 'node:path';
 import { kept, root } from './folder.mjs';
 import { whileLocked } from './lock.mjs';
 import { StartProblem } from './problem.mjs';
@@ -25,7 +25,7 @@ const sources = [
 	'tailwind.config.ts',
 	'tsconfig.json'
 ];
-const buildsKept = 3;
+const buildsKept = 6;
 
 /** @param {string} path relative to the project @returns {string[]} files in a fixed order */
 function filesUnder(path) {
@@ -82,6 +82,10 @@ async function build(say) {
 		return { folder, fresh: false };
 	}
 	say('building, about 15 seconds');
+	// We hold the lock: what is half made was left by a killed build.
+	for (const left of readdirSync(kept()).filter((entry) => entry.startsWith('making-'))) {
+		rmSync(kept(left), { recursive: true, force: true });
+	}
 	const making = join(kept(), `making-${randomBytes(4).toString('hex')}`);
 	const vite = join(root, 'node_modules/vite/bin/vite.js');
 	const { code, output } = await run(process.execPath, [vite, 'build', '--logLevel', 'warn'], {
@@ -92,9 +96,11 @@ async function build(say) {
 		rmSync(making, { recursive: true, force: true });
 		throw new StartProblem(`The application could not be built:\n${output.trim()}`);
 	}
-	rmSync(folder, { recursive: true, force: true });
+	// Sources that changed in the meantime: a build of neither state must not be taken for one of them later.
+	const settled = sourcesHash() === name ? folder : `${folder}-${randomBytes(4).toString('hex')}`;
+	rmSync(settled, { recursive: true, force: true });
 	mkdirSync(builds, { recursive: true });
-	renameSync(making, folder);
-	forgetOld(builds, name);
-	return { folder, fresh: true };
+	renameSync(making, settled);
+	forgetOld(builds, basename(settled));
+	return { folder: settled, fresh: true };
 }

@@ -1,21 +1,35 @@
 import { randomBytes } from 'node:crypto';
-import { mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { chmodSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { livePostmaster, openCluster } from '../scripts/start/cluster.mjs';
-import { chmodSync } from 'node:fs';
-import { findPostgres, installPostgres } from '../scripts/start/postgres-programs.mjs';
-import { startedAt } from '../scripts/start/processes.mjs';
-import { applicationRole, ensureRoles, ownerRole } from '../scripts/start/roles.mjs';
+import { livePostmaster, openCluster } from './start/cluster.mjs';
+import { findPostgres, installPostgres } from './start/postgres-programs.mjs';
+import { startedAt } from './start/processes.mjs';
+import { applicationRole, ensureRoles, ownerRole } from './start/roles.mjs';
 
 const prefix = 'meniscus-test-';
 const ownerFile = 'owner';
+
+/** Folders of this process. */
+const ours = new Set<string>();
+
+/** Ends a cluster that may live in a folder, at once and without the checkpoint nobody needs, and removes the folder. */
+export function removeFolder(folder: string): void {
+	const running = livePostmaster(join(folder, 'pg'));
+	if (running) process.kill(running.pid, 'SIGQUIT');
+	rmSync(folder, { recursive: true, force: true, maxRetries: 20, retryDelay: 50 });
+	ours.delete(folder);
+}
+
+// At Ctrl-C vitest leaves without waiting for its teardown.
+process.once('exit', () => ours.forEach(removeFolder));
 
 /** A folder that {@link sweep} removes when this process is gone. The database account may pass through it. */
 export function throwAwayFolder(): string {
 	const folder = mkdtempSync(join(tmpdir(), prefix));
 	chmodSync(folder, 0o755);
 	writeFileSync(join(folder, ownerFile), `${process.pid} ${startedAt(process.pid) ?? ''}`);
+	ours.add(folder);
 	return folder;
 }
 
@@ -72,7 +86,7 @@ export async function throwAwayCluster(folder = throwAwayFolder()): Promise<Thro
 		},
 		async remove() {
 			await cluster.stop();
-			rmSync(folder, { recursive: true, force: true });
+			removeFolder(folder);
 		}
 	};
 }
@@ -89,9 +103,6 @@ export async function sweep(): Promise<void> {
 			continue;
 		}
 		if (startedAt(Number(owner[0])) === owner[1]) continue;
-		const running = livePostmaster(join(folder, 'pg'));
-		// SIGQUIT: at once, without a checkpoint nobody needs.
-		if (running) process.kill(running.pid, 'SIGQUIT');
-		rmSync(folder, { recursive: true, force: true });
+		removeFolder(folder);
 	}
 }

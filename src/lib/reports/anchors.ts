@@ -161,15 +161,18 @@ function attachFragment(value: string, projection: Projection): Attachment {
 	return { attached: 'lost', sentence: `The ${noun} ${name} is no longer in this section.` };
 }
 
-/** The same words at the same place, with something of what stood around them. */
+/** The same words at the same place, with all of what stood around them. */
 function atPosition(draft: Draft, position: TextPositionSelector): Attachment | null {
 	const from = unitOffset(draft.text, position.start);
 	const to = unitOffset(draft.text, position.end);
 	if (draft.text.slice(from, to) !== draft.quote.exact || !draft.hasSameLinks(from, to)) return null;
-	return draft.contextScore(from, to) >= draft.certainScore ? draft.found('position', from, to) : null;
+	const { prefix, suffix } = draft.quote;
+	return draft.contextScore(from, to) === prefix.length + suffix.length
+		? draft.found('position', from, to)
+		: null;
 }
 
-/** The same words elsewhere: where most of the surroundings agree, then the nearest. */
+/** The same words, there or elsewhere: where most of the surroundings agree, then the nearest. */
 function byQuote(draft: Draft): Attachment | null {
 	const { exact } = draft.quote;
 	let best: { from: number; score: number; distance: number } | null = null;
@@ -179,16 +182,17 @@ function byQuote(draft: Draft): Attachment | null {
 		places += 1;
 		const score = draft.contextScore(from, from + exact.length);
 		const distance = Math.abs(pointOffset(draft.text, from) - draft.wanted);
-		if (!best || score > best.score || (score === best.score && distance < best.distance))
+		if (!best || score > best.score || (score === best.score && distance < best.distance)) {
 			best = { from, score, distance };
+		}
 	}
 	if (!best) return null;
-	if (best.score >= draft.certainScore || (places === 1 && exact.length >= contextLength)) {
-		return draft.found('quote', best.from, best.from + exact.length);
-	}
+	const to = best.from + exact.length;
+	const isCertain = best.score >= draft.certainScore || (places === 1 && exact.length >= contextLength);
+	if (isCertain) return draft.found(best.distance === 0 ? 'position' : 'quote', best.from, to);
 	// A short word that stands in several places with other surroundings says nothing about which was meant.
 	const isTelling = exact.length >= 12 && (places === 1 || best.score >= 4);
-	return isTelling ? draft.found('approximate', best.from, best.from + exact.length) : null;
+	return isTelling ? draft.found('approximate', best.from, to) : null;
 }
 
 /** Words that changed by at most a quarter; for short ones the surroundings have to agree. */

@@ -138,7 +138,7 @@ function plainText(tree: HastRoot, blockStart: number): PlainText {
 /** TeX as near to plain text as numbers and units need. */
 function plainTex(tex: string): string {
 	const plain = tex
-		.replace(/\\(?:mathrm|text|textrm|mathit|mathsf|operatorname)\s*\{([^{}]*)\}/g, '$1')
+		.replace(/\\(?:mathrm|text|textrm|mathit|mathsf|operatorname)(?![A-Za-z])/g, '')
 		.replace(/\\(?:[,;:! ]|quad|qquad|thinspace)|~/g, ' ')
 		.replace(/\\pm(?![A-Za-z])/g, '±')
 		.replace(/\\times(?![A-Za-z])/g, '×')

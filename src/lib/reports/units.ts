@@ -101,7 +101,7 @@ export function parseUnit(text: string): UnitForm | null {
 			return [symbol, -Number(times)];
 		})
 	);
-	return formOf(inverted, -scanned.form.power);
+	return formOf(inverted, 0 - scanned.form.power);
 }
 
 type Add = (symbol: string, prefixPower: number, times: number) => void;

@@ -11,10 +11,7 @@ export const load: PageServerLoad = async (event) => {
 	const sessions = await forPage(event, () => accounts.sessionsOf(viewer as Viewer, session));
 	return {
 		sessions: sessions.map(({ client, ...rest }) => ({ ...rest, browser: browserName(client) })),
-		trail: [
-			{ label: 'Now', href: '/now' },
-			{ label: 'Account', href: '/account', current: true }
-		]
+		trail: [{ label: 'Account', href: '/account', current: true }]
 	};
 };
 

@@ -93,8 +93,10 @@ function extent(values: readonly number[], symmetric: boolean): [number, number]
 		greatest = Math.max(Math.abs(least), Math.abs(greatest));
 		least = -greatest;
 	}
-	if (greatest - least > Math.abs(greatest) * 1e-12) return [least, greatest];
-	const half = greatest === 0 ? 1 : Math.abs(greatest) * 0.05;
+	const size = Math.max(Math.abs(least), Math.abs(greatest));
+	// what is below any quantity of a laboratory by hundreds of powers of ten is zero on a drawing
+	if (size > 1e-290 && greatest - least > size * 1e-12) return [least, greatest];
+	const half = size > 1e-290 ? size * 0.05 : 1;
 	return [least - half, greatest + half];
 }
 

@@ -129,7 +129,9 @@ export function describeHistogram(
 		return { from, to, count, x: left, width: right - left, y: top, height: y.start - top };
 	});
 	// counts are whole: ticks between them would say otherwise
-	y.major = y.major.filter(({ value }) => Number.isInteger(value));
+	y.major = y.major
+		.filter(({ value }) => Number.isInteger(value))
+		.map((tick) => ({ ...tick, text: String(tick.value) }));
 	y.minor = [];
 	return { width, height, x, y, bars };
 }

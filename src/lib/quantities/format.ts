@@ -26,6 +26,9 @@ const thinSpace = '\u2009';
 /** Digits shown of a value whose uncertainty is not stated: enough to compute on, few enough to read. */
 const digitsWithoutUncertainty = 6;
 
+/** Decimal digits that a binary double carries. */
+const mostDigits = 15;
+
 /**
  * Rounds to the uncertainty (GUM 7.2.6: one or two digits). Two where the first digit is 1 or 2, one elsewhere
  * (common practice), so that rounding never changes the uncertainty by more than a sixth.
@@ -36,6 +39,8 @@ export function roundToUncertainty(value: number, standardUncertainty: number | 
 	const digits = significantDigits(u);
 	const lastPlace = placeOfFirstDigit(Number(u.toPrecision(digits))) - digits + 1;
 	const size = Math.max(placeOfFirstDigit(value), placeOfFirstDigit(u));
+	// an uncertainty below the last bit of the value cannot be shown in its digits
+	if (size - lastPlace > mostDigits) return roundToDigits(value, mostDigits);
 	// A power of ten where the last digit shown would be left of the decimal sign, or the value is tiny or huge.
 	const exponent = lastPlace > 0 || size < -3 || size > 5 ? size : 0;
 	const decimals = Math.max(0, exponent - lastPlace);

@@ -9,6 +9,7 @@ export {
 } from './dimension';
 export { QuantityProblem, type QuantityProblemCode } from './problems';
 export {
+	coherentUnit,
 	compatibleUnits,
 	divideUnits,
 	intervalUnit,

@@ -1,3 +1,6 @@
+import { QuantityProblem } from './problems';
+import { parseUnit } from './units';
+
 /** What stands in a cell, as a number. The text itself is kept elsewhere, exactly as typed. */
 export interface TypedNumber {
 	value: number;
@@ -63,11 +66,11 @@ export function parseTypedNumber(typed: string): NumberReading {
 	if (simple) return read(typed, simple[1] ?? '', simple[2], undefined, simple[3] ?? simple[4]);
 	const ranged = plusMinus.exec(text);
 	if (ranged) return read(typed, ranged[1] ?? '', undefined, ranged[2], ranged[3] ?? ranged[4]);
-	const unit = /^[+-]?[\d.,]*\d\s*([%°ºµμ\p{L}][\p{L}\d/ ()^-]*)$/u.exec(text);
-	if (unit?.[1] !== undefined && unit[1].length > 1) {
+	const unit = /^[+-]?[\d.,]*\d\s*([%°ºµμ\p{L}][\p{L}\d/ ()^-]*)$/u.exec(text)?.[1];
+	if (unit !== undefined && isUnit(unit)) {
 		return problem(
 			'has-unit',
-			`"${typed.trim()}" carries "${unit[1]}". The column has its unit already: type the number alone.`
+			`"${typed.trim()}" carries "${unit}". The column has its unit already: type the number alone.`
 		);
 	}
 	return problem('not-a-number', `"${typed.trim()}" is not a number.`);
@@ -111,4 +114,14 @@ function problem(
 	message: string
 ): NumberReading {
 	return { kind: 'problem', code, message };
+}
+
+function isUnit(text: string): boolean {
+	try {
+		parseUnit(text);
+		return true;
+	} catch (cause) {
+		if (cause instanceof QuantityProblem) return false;
+		throw cause;
+	}
 }

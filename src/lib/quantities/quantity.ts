@@ -49,6 +49,10 @@ export interface Uncertainty {
 	readonly degreesOfFreedom: number;
 }
 
+/** Parts are squared and added: between these their squares are numbers still, neither overflowing nor vanishing. */
+const largestPart = 1e150;
+const smallestPart = 1e-150;
+
 const noParts: LinearParts = new Map();
 
 /** A quantity without uncertainty. `value` is in `unit`; on a scale of temperature it is a point. */
@@ -94,7 +98,13 @@ export function propagate(
 	const parts = new Map<Source, number>();
 	for (const [input, derivative] of inputs) {
 		if (derivative === 0) continue;
-		for (const [source, part] of input.parts) addPart(parts, source, derivative * part);
+		for (const [source, part] of input.parts) {
+			const size = derivative * part;
+			if (!(Math.abs(size) < largestPart)) {
+				throw new QuantityProblem('not-finite', 'The uncertainty of the result is beyond all numbers.');
+			}
+			if (Math.abs(size) > smallestPart) addPart(parts, source, size);
+		}
 	}
 	return { value, dimension, unit, point, parts };
 }

@@ -56,7 +56,8 @@ export function isUnitSymbol(symbol: string): boolean {
 }
 
 function findSymbol(typed: string): { symbol: string; prefix: string; base: string } | null {
-	const symbol = unitAliases[typed] ?? typed.replace(/^[µμ]/u, 'u');
+	const alias = Object.hasOwn(unitAliases, typed) ? unitAliases[typed] : undefined;
+	const symbol = alias ?? typed.replace(/^[µμ]/u, 'u');
 	if (Object.hasOwn(unitTable, symbol)) return { symbol, prefix: '', base: symbol };
 	const prefix = symbol.charAt(0);
 	const base = symbol.slice(1);

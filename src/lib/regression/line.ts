@@ -78,6 +78,17 @@ export function fitLine(x: readonly Quantity[], y: readonly Quantity[], options:
 	const scatter = compensatedSum(sums.residuals.map((r, i) => (sums.w[i] ?? 0) * r * r));
 	const deviation = degreesOfFreedom > 0 ? Math.sqrt(scatter / degreesOfFreedom) : null;
 
+	if (
+		!Number.isFinite(sums.slope) ||
+		!Number.isFinite(scatter) ||
+		!Number.isFinite(sums.slope * sums.centreX)
+	) {
+		throw new FitProblem(
+			'not-finite',
+			'Some point lies so far out that no line can be computed. Look for it.'
+		);
+	}
+
 	const slopeParts = new Map<Source, number>();
 	const centreParts = new Map<Source, number>();
 	const kept = (source: Source) => options.policy === 'stated' || source.component.scope !== 'reading';

@@ -6,3 +6,4 @@ export type * from './types';
 export { evaluate } from './evaluate';
 export { engineVersion } from './engine-version';
 export { readTable } from './read-table';
+export { splitDelimited } from './delimited';

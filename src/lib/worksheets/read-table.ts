@@ -112,7 +112,7 @@ function readCells(
 }
 
 /**
- * A plain number in the column's unit, with one digit more than the typed resolution carries over. Anything else
+ * A plain number in the column's unit, with two digits more than the typed resolution carries over. Anything else
  * keeps its text with its own unit behind it, so that it shows up as a problem and not as a wrong number.
  */
 function convert(text: string, from: Unit, column: ColumnDefinition): string {
@@ -130,7 +130,7 @@ function convert(text: string, from: Unit, column: ColumnDefinition): string {
 	const converted = (value * from.factor + from.offset - to.offset) / to.factor;
 	const step = (Number(`1e-${decimals}`) * from.factor) / to.factor;
 	const sameScale = from.factor === to.factor;
-	const places = sameScale ? Math.max(decimals, offsetDecimals(from, to)) : 1 - placeOfFirstDigit(step);
+	const places = sameScale ? Math.max(decimals, offsetDecimals(from, to)) : 2 - placeOfFirstDigit(step);
 	return converted.toFixed(Math.min(20, Math.max(0, places)));
 }
 

@@ -15,6 +15,9 @@ type Definition = Pick<
 	'name' | 'label' | 'unit' | 'resolution' | 'uncertainty' | 'plausible'
 >;
 
+/** In SI. Far beyond anything measured, and far enough from the largest number for squares of products. */
+const largestValue = 1e60;
+
 export interface ValueReading {
 	/** null when there is none or it cannot be read */
 	quantity: Quantity | null;
@@ -42,6 +45,10 @@ export function readValue(
 	const { number } = reading;
 	const unit = parseUnit(definition.unit);
 	const value = exactly(number.value, unit);
+	if (!(Math.abs(value.value) < largestValue)) {
+		const message = `${address}: "${typed.trim()}" is larger than any quantity here. Kept as typed.`;
+		return { quantity: null, empty: false, problems: [{ severity: 'error', code: 'too-large', message }] };
+	}
 	const deviations = deviationsOf(number, definition, place, sources);
 	const quantity = withDeviations(
 		value,

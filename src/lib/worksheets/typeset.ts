@@ -54,10 +54,12 @@ function write(formula: Formula, types: LeafTypes): Written {
 			};
 		case 'multiply': {
 			const between = formula.right.op === 'unit' ? '\\,' : types.times;
-			return {
-				tex: `${inner(formula.left, strength.product)}${between}${inner(formula.right, strength.product)}`,
-				binds: strength.product
-			};
+			const left = write(formula.left, types);
+			// a minus in front needs no parentheses: it is the sign of the whole product
+			const signed = left.binds === strength.sign;
+			const first = signed ? left.tex : inner(formula.left, strength.product);
+			const tex = `${first}${between}${inner(formula.right, strength.product)}`;
+			return { tex, binds: signed ? strength.sign : strength.product };
 		}
 		case 'divide':
 			// a quantity over a unit stands on one line, as in ln(p/Pa); everything else as a fraction

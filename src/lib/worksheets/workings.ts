@@ -5,6 +5,7 @@ import {
 	intervalUnit,
 	isExact,
 	parseUnit,
+	QuantityProblem,
 	roundToUncertainty,
 	standardUncertainty,
 	differenceIn,
@@ -93,7 +94,7 @@ function resultTex(value: Quantity, unitName: string): string {
 	return formatQuantity(valueIn(value, unit), u === 0 ? null : differenceIn(u, unit), unit).tex;
 }
 
-/** Derivative towards each uncertain leaf: the leaf alone is given one source of size one, and its part read off. */
+/** Derivative towards each uncertain leaf: the leaf alone keeps its uncertainty, as one source, and its part is read off. */
 function partials(
 	calculation: Calculation,
 	subject: Subject,
@@ -106,10 +107,12 @@ function partials(
 		if (isExact(input)) return [];
 		const probe: Source = { component: { id: 'probe', label: '', scope: 'run', degreesOfFreedom: Infinity } };
 		const key = leafKey(leaf);
-		const output = evaluateFormula(formula, (other) => {
+		const size = standardUncertainty(input);
+		const output = probed(formula, (other) => {
 			const quantity = lookUp(other);
-			return { ...quantity, parts: leafKey(other) === key ? new Map([[probe, 1]]) : new Map() };
+			return { ...quantity, parts: leafKey(other) === key ? new Map([[probe, size]]) : new Map() };
 		});
+		if (!output) return [];
 		const unitOut = intervalUnit(parseUnit(subject.unit));
 		const unitIn = intervalUnit(leafUnit(calculation, leaf, input));
 		const symbol = leafSymbol(calculation, leaf);
@@ -117,11 +120,21 @@ function partials(
 			{
 				symbol,
 				tex: `\\frac{\\partial ${subject.symbol}}{\\partial ${symbol}}`,
-				value: ((output.parts.get(probe) ?? 0) * unitIn.factor) / unitOut.factor,
+				value: (((output.parts.get(probe) ?? 0) / size) * unitIn.factor) / unitOut.factor,
 				unit: unitText(divideUnits(unitOut, unitIn))
 			}
 		];
 	});
+}
+
+/** At the edge of what numbers hold, the value exists while its parts, added up otherwise, do not: no derivative then. */
+function probed(formula: Formula, lookUp: (leaf: Leaf) => Quantity): Quantity | null {
+	try {
+		return evaluateFormula(formula, lookUp);
+	} catch (cause) {
+		if (cause instanceof QuantityProblem) return null;
+		throw cause;
+	}
 }
 
 function leafSymbol(calculation: Calculation, leaf: Leaf): string {

@@ -11,11 +11,6 @@ interface Live {
 	handleUpgrade(request: IncomingMessage, socket: Duplex, head: Buffer): void;
 	close(): Promise<void>;
 }
-interface LiveEditing {
-	handleUpgrade: Live['handleUpgrade'];
-	closeLive(): Promise<void>;
-}
-
 const liveSymbol = Symbol.for('meniscus.live');
 const holder = globalThis as unknown as Record<symbol, Live | undefined>;
 
@@ -39,15 +34,16 @@ const tasks: jobs.Tasks = {
 /** Works through the queue in this process. */
 export const startJobs = () => jobs.start(tasks, ['tidy']);
 
-/** Starts what one process does beside answering requests: the job queue and live editing. Ends it at shutdown. */
+/**
+ * Starts what one process does beside answering requests: live editing and the job queue. Ends it at shutdown. Rejects
+ * when the database may lose what it confirmed: the process must not serve then.
+ */
 export async function startProcess(): Promise<void> {
+	// Loaded here, not above: whoever only works through the queue needs no live editing.
+	const { closeLive, handleUpgrade, startLive } = await import('./collab');
+	await startLive();
+	holder[liveSymbol] = { handleUpgrade, close: closeLive };
 	const runner = await startJobs();
-	const live = await liveEditing();
-	holder[liveSymbol] = {
-		handleUpgrade: (request, socket, head) =>
-			live ? live.handleUpgrade(request, socket, head) : socket.destroy(),
-		close: async () => live?.closeLive()
-	};
 	process.once('sveltekit:shutdown', () => {
 		runner
 			.stop()
@@ -55,9 +51,4 @@ export async function startProcess(): Promise<void> {
 			.then(closeDatabase)
 			.catch((thrown: unknown) => logger.warn({ err: thrown }, 'the database pool did not close'));
 	});
-}
-
-async function liveEditing(): Promise<LiveEditing | undefined> {
-	const [load] = Object.values(import.meta.glob<LiveEditing>('./collab/index.ts'));
-	return load?.();
 }

@@ -11,6 +11,8 @@ type Allow = Partial<Record<Role, readonly Relation[]>>;
  * An action named `<thing>.see` also decides whether a refusal says "not allowed" or "not here".
  */
 export const permissions = {
+	'site.manage': { thing: 'site', allow: { administrator: ['course'] } },
+
 	'course.see': {
 		thing: 'course',
 		allow: { student: ['course'], grader: ['course'], instructor: ['course'] }

@@ -6,6 +6,8 @@ import { sql, type SQL } from 'drizzle-orm';
  * r report, d document, s snapshot, m marking, k remark, f file.
  */
 export const scopes = {
+	// Not a row: what belongs to no course. Its one id is 'site'.
+	site: { from: sql.raw('(select 1) site'), id: sql.raw("'site'::text"), course: sql.raw('null::uuid') },
 	course: { from: sql.raw('courses c'), id: sql.raw('c.id'), course: sql.raw('c.id') },
 	assignment: { from: sql.raw('assignments a'), id: sql.raw('a.id'), course: sql.raw('a.course_id') },
 	labSection: { from: sql.raw('lab_sections ls'), id: sql.raw('ls.id'), course: sql.raw('ls.course_id') },

@@ -18,7 +18,8 @@ const everyMember = {
 	otherStudent: 200,
 	grader: 200,
 	otherGrader: 200,
-	instructor: 200
+	instructor: 200,
+	administrator: 200
 };
 const instructorOnly = {
 	...closed,
@@ -27,6 +28,7 @@ const instructorOnly = {
 	otherStudent: 403,
 	grader: 403,
 	otherGrader: 403,
+	administrator: 403,
 	instructor: 200
 };
 const graderOnly = {
@@ -36,6 +38,7 @@ const graderOnly = {
 	otherStudent: 403,
 	grader: 200,
 	otherGrader: 200,
+	administrator: 403,
 	instructor: 403
 };
 const own = { ...closed, student: 200, mate: 200 };
@@ -83,6 +86,11 @@ export const pageRows: Record<string, PageRow> = {
 		stage: 'returned',
 		params: work,
 		answers: { ...own, grader: 403, instructor: 403 }
+	},
+	'/(desk)/site/[part]': {
+		stage: 'draft',
+		params: () => ({ part: 'accounts' }),
+		answers: { ...closed, administrator: 200 }
 	},
 	'/(door)/sign-in': { stage: 'draft', answers: open },
 	'/(door)/reset': { stage: 'draft', answers: open }

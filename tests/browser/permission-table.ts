@@ -66,7 +66,9 @@ const members = {
 	otherStudent: 200,
 	grader: 200,
 	otherGrader: 200,
-	instructor: 200
+	instructor: 200,
+	// sees that there is a course, to invite into it
+	administrator: 200
 };
 /** members see the course, so that they are told "not yours"; everyone else that it is not there */
 const instructorOnly = (status = 200) => ({
@@ -76,8 +78,11 @@ const instructorOnly = (status = 200) => ({
 	otherStudent: 403,
 	grader: 403,
 	otherGrader: 403,
+	administrator: 403,
 	instructor: status
 });
+/** inviting is an administrator's too: somebody has to name the first instructor */
+const inviters = (status = 200) => ({ ...instructorOnly(status), administrator: status });
 const signedIn = (status = 200) => ({ nobody: 401, else: status });
 const later = { dueLocal: '2030-01-04T17:00', closesLocal: '2030-01-06T17:00' };
 const anchor = {
@@ -102,6 +107,20 @@ export const apiRows: Record<string, Row> = {
 		answers: signedIn(404)
 	},
 
+	'GET /accounts': { stage: 'draft', answers: { ...closed, administrator: 200 } },
+	'POST /courses': {
+		stage: 'draft',
+		call: (s) => ({
+			body: {
+				slug: `${s.slug}-b`,
+				code: 'PC 320',
+				title: 'Second course',
+				institution: 'Harrow Point College',
+				zone: 'America/Halifax'
+			}
+		}),
+		answers: { ...closed, administrator: 201 }
+	},
 	'GET /courses': { stage: 'draft', answers: signedIn() },
 	'GET /courses/{course}': {
 		stage: 'draft',
@@ -111,7 +130,7 @@ export const apiRows: Record<string, Row> = {
 	'GET /courses/{course}/people': {
 		stage: 'draft',
 		call: (s) => ({ params: { course: s.slug } }),
-		answers: instructorOnly()
+		answers: inviters()
 	},
 	'POST /courses/{course}/invitations': {
 		stage: 'draft',
@@ -119,16 +138,29 @@ export const apiRows: Record<string, Row> = {
 			params: { course: s.slug },
 			body: { email: 'new@harrow-point.example', role: 'student', labSectionId: s.labSectionId }
 		}),
-		answers: instructorOnly(201)
+		answers: inviters(201)
 	},
 	'GET /courses/{course}/bench-words': {
 		stage: 'draft',
 		call: (s) => ({ params: { course: s.slug } }),
-		answers: instructorOnly()
+		answers: inviters()
 	},
 	'POST /courses/{course}/bench-words': {
 		stage: 'draft',
 		call: (s) => ({ params: { course: s.slug }, body: { labSectionId: s.labSectionId } }),
+		answers: inviters(201)
+	},
+	'POST /courses/{course}/lab-sections': {
+		stage: 'draft',
+		call: (s) => ({ params: { course: s.slug }, body: { name: 'Friday', meets: 'Friday 9:00' } }),
+		answers: instructorOnly(201)
+	},
+	'POST /courses/{course}/assignments': {
+		stage: 'draft',
+		call: (s) => ({
+			params: { course: s.slug },
+			body: { experiment: 'vaporization-of-water', ...later, hideNames: true }
+		}),
 		answers: instructorOnly(201)
 	},
 	'POST /courses/{course}/teams': {
@@ -201,7 +233,8 @@ export const apiRows: Record<string, Row> = {
 			otherStudent: 403,
 			grader: 200,
 			otherGrader: 200,
-			instructor: 403
+			instructor: 403,
+			administrator: 403
 		}
 	},
 	'GET /sittings/{sitting}': {
@@ -272,7 +305,8 @@ export const apiRows: Record<string, Row> = {
 			otherStudent: 403,
 			grader: 200,
 			otherGrader: 200,
-			instructor: 403
+			instructor: 403,
+			administrator: 403
 		}
 	},
 	'POST /courses/{course}/kept-remarks': {
@@ -285,7 +319,8 @@ export const apiRows: Record<string, Row> = {
 			otherStudent: 403,
 			grader: 201,
 			otherGrader: 201,
-			instructor: 403
+			instructor: 403,
+			administrator: 403
 		}
 	},
 	'POST /kept-remarks/{kept}/uses': {

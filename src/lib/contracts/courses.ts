@@ -131,3 +131,75 @@ export const addTeam = operation({
 	status: 201,
 	repeatable: true
 });
+
+export const addCourse = operation({
+	id: 'addCourse',
+	method: 'POST',
+	path: '/courses',
+	summary: 'Opens a course; its first instructor is invited apart',
+	access: 'signed-in',
+	body: z.object({
+		slug: slug.describe('Stands in addresses'),
+		code: z.string().trim().min(1, 'Type the code people call it by.').max(40),
+		title: z.string().trim().min(1, 'Type the title.').max(160),
+		institution: z.string().trim().min(1, 'Type the institution.').max(160),
+		zone: z.string().trim().min(1).max(80)
+	}),
+	response: z.object({ id: uuid, slug }),
+	status: 201,
+	repeatable: true
+});
+
+export const addLabSection = operation({
+	id: 'addLabSection',
+	method: 'POST',
+	path: '/courses/{course}/lab-sections',
+	summary: 'Adds a lab section to a course',
+	access: 'signed-in',
+	params: courseParams,
+	body: z.object({
+		name: z.string().trim().min(1, 'Type a name.').max(60),
+		meets: z.string().trim().min(1, 'Say when it meets.').max(120)
+	}),
+	response: z.object({ id: uuid }),
+	status: 201,
+	repeatable: true
+});
+
+export const addAssignment = operation({
+	id: 'addAssignment',
+	method: 'POST',
+	path: '/courses/{course}/assignments',
+	summary: "Sets an experiment in a course, with its dates in the course's zone",
+	access: 'signed-in',
+	params: courseParams,
+	body: z.object({
+		experiment: z.string().regex(/^[a-z0-9-]{1,80}$/, 'Choose an experiment.'),
+		dueLocal: wallClock,
+		closesLocal: wallClock,
+		hideNames: z.boolean().default(true)
+	}),
+	response: z.object({ id: uuid, title: z.string() }),
+	status: 201,
+	repeatable: true
+});
+
+export const listAccounts = operation({
+	id: 'listAccounts',
+	method: 'GET',
+	path: '/accounts',
+	summary: 'Accounts of the site, by e-mail',
+	access: 'signed-in',
+	query: pageQuery,
+	response: page(
+		z.object({
+			id: uuid,
+			name: z.string(),
+			email: z.string(),
+			verified: z.boolean(),
+			siteAdministrator: z.boolean(),
+			courses: z.number().int(),
+			createdAt: instant
+		})
+	)
+});

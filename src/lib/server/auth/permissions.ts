@@ -15,10 +15,11 @@ export const permissions = {
 
 	'course.see': {
 		thing: 'course',
-		allow: { student: ['course'], grader: ['course'], instructor: ['course'] }
+		// An administrator opens courses and names their first instructor; reports and marks are not an administrator's.
+		allow: { student: ['course'], grader: ['course'], instructor: ['course'], administrator: ['course'] }
 	},
 	'course.change': { thing: 'course', allow: { instructor: ['course'] } },
-	'course.invite': { thing: 'course', allow: { instructor: ['course'] } },
+	'course.invite': { thing: 'course', allow: { instructor: ['course'], administrator: ['course'] } },
 	'course.mark': { thing: 'course', allow: { grader: ['course'] } },
 	'course.return': { thing: 'course', allow: { instructor: ['course'] } },
 	'course.spread': { thing: 'course', allow: { instructor: ['course'] } },

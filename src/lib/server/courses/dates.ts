@@ -15,7 +15,8 @@ export interface Dates {
 
 const stored = (wallClock: string) => wallClock.replace('T', ' ');
 
-function checkOrder(dates: Dates): void {
+/** Errors: Refusal 'unprocessable' when hand-in would close before the report is due. */
+export function mustBeInOrder(dates: Dates): void {
 	if (dates.closesLocal < dates.dueLocal) {
 		throw unprocessable('Hand-in closes before the report is due. Move one of the two.', {
 			closesLocal: 'Not before the due time.'
@@ -31,7 +32,7 @@ async function lockAssignment(tx: Transaction, id: string) {
 
 /** Sets due and closing time. What was handed in keeps the due time it was ruled by. */
 export async function changeDates(act: Act, input: Dates & { assignment: string }): Promise<Dates> {
-	checkOrder(input);
+	mustBeInOrder(input);
 	return transact(act.repeatable, async (tx) => {
 		const assignment = await lockAssignment(tx, input.assignment);
 		await authorise(tx, act.viewer, 'assignment.change', assignment.id);
@@ -65,7 +66,7 @@ export async function grantExtension(
 		reason: string;
 	}
 ): Promise<{ id: string }> {
-	checkOrder(input);
+	mustBeInOrder(input);
 	if ((input.userId === undefined) === (input.teamId === undefined)) {
 		throw unprocessable('Name either one person or one team.', { userId: 'One of the two.' });
 	}

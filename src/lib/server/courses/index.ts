@@ -1,4 +1,6 @@
-export { changeDates, grantExtension, type Dates } from './dates';
+export { accountsOfSite, type SiteAccount } from './accounts-of-site';
+export { addCourse, addLabSection, type NewCourse } from './add-course';
+export { changeDates, grantExtension, mustBeInOrder, type Dates } from './dates';
 export { dueFor, type Due } from './due';
 export { extensionsOf, type ExtensionRow } from './extensions-of';
 export {

@@ -7,3 +7,5 @@ export {
 	type StoredCriterion,
 	type StoredRubric
 } from './worksheet-of';
+export { addAssignment, type NewAssignment } from './add-assignment';
+export { library } from './library';

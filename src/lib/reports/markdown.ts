@@ -38,7 +38,7 @@ function isReasonable(source: string): boolean {
 	for (const line of source.split('\n')) {
 		if (deepItem.test(line)) return false;
 		const lead = /^[\s>*+\-\d.)]*/.exec(line)?.[0] ?? '';
-		if ((lead.match(/[>*+-]|\d[.)]/g)?.length ?? 0) > deepestNesting && !/^[\s*_-]*$/.test(line))
+		if ((lead.match(/[>*+-]|\d[.)]/g)?.length ?? 0) > deepestNesting && !/^[\s*_-]{1,400}$/.test(line))
 			return false;
 		const inLine = line.match(/[[\]*_`<~$!&:{\\|]/g)?.length ?? 0;
 		openings = line.trim() === '' ? 0 : openings + inLine;

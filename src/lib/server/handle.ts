@@ -32,7 +32,7 @@ async function answer(event: RequestEvent, resolve: Parameters<Handle>[0]['resol
 		transformPageChunk: ({ html }) =>
 			theme === 'system' ? html : html.replace('<html lang="en"', `<html lang="en" data-theme="${theme}"`)
 	});
-	return isApi(event) ? asProblem(event, response) : personal(event, response);
+	return isApi(event) ? asProblem(event, response) : personal(event, withStyleNonce(response));
 }
 
 function remember(event: RequestEvent, open: OpenSession | null): void {
@@ -51,6 +51,19 @@ function asProblem(event: RequestEvent, response: Response): Response {
 		event.locals.requestId
 	);
 	return problemResponse({ ...details, status: 405 }, { allow: response.headers.get('allow') ?? '' });
+}
+
+/** The section editor makes style elements with the page's nonce; kit lets that in only where it inlined styles itself. */
+function withStyleNonce(response: Response): Response {
+	const policy = response.headers.get('content-security-policy');
+	const nonce = policy && /'nonce-[^']+'/.exec(policy)?.[0];
+	if (policy && nonce && !/style-src-elem[^;]*'nonce-/.test(policy)) {
+		response.headers.set(
+			'content-security-policy',
+			policy.replace("style-src-elem 'self'", `style-src-elem 'self' ${nonce}`)
+		);
+	}
+	return response;
 }
 
 /** What a signed-in person sees is kept by no cache on the way. */

@@ -53,11 +53,14 @@ function asProblem(event: RequestEvent, response: Response): Response {
 	return problemResponse({ ...details, status: 405 }, { allow: response.headers.get('allow') ?? '' });
 }
 
-/** The section editor makes style elements with the page's nonce; kit lets that in only where it inlined styles itself. */
+/**
+ * The section editor makes style elements with the page's nonce; kit lets that in only where it inlined styles itself.
+ * In development styles come without one, and a nonce beside 'unsafe-inline' would shut them out.
+ */
 function withStyleNonce(response: Response): Response {
 	const policy = response.headers.get('content-security-policy');
 	const nonce = policy && /'nonce-[^']+'/.exec(policy)?.[0];
-	if (policy && nonce && !/style-src-elem[^;]*'nonce-/.test(policy)) {
+	if (policy && nonce && !/style-src-elem[^;]*'(nonce-|unsafe-inline)/.test(policy)) {
 		response.headers.set(
 			'content-security-policy',
 			policy.replace("style-src-elem 'self'", `style-src-elem 'self' ${nonce}`)

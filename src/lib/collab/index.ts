@@ -1,5 +1,6 @@
 export {
 	readReadings,
+	readingsParts,
 	rowIds,
 	insertRows,
 	setCell,

@@ -30,6 +30,11 @@ export function readReadings(doc: Y.Doc, tableNames: readonly string[]): Reading
 	return { parameters, tables };
 }
 
+/** The shared types that hold the readings, for an undo manager to watch. */
+export function readingsParts(doc: Y.Doc, tableNames: readonly string[]): Y.AbstractType<unknown>[] {
+	return [parametersOf(doc), ...tableNames.map((table) => rowsOf(doc, table))] as Y.AbstractType<unknown>[];
+}
+
 /** Row ids in order. */
 export function rowIds(doc: Y.Doc, table: string): string[] {
 	return orderedRows(doc, table).map(({ id }) => id);

@@ -2,14 +2,15 @@ import type { Attachment } from 'svelte/attachments';
 
 /**
  * Makes a box that can be moved sideways a stop for the Tab key, named `label`, while there is something to move:
- * one that shows everything would only be in the way.
+ * one that shows everything would only be in the way. The markup itself has `tabindex="0" role="group" aria-label`, so
+ * that it can be reached before this has run.
  */
 export function scrollStop(label: string): Attachment<HTMLElement> {
 	return (box) => {
 		const look = () => {
 			if (box.scrollWidth > box.clientWidth + 1) {
 				box.tabIndex = 0;
-				box.setAttribute('role', 'region');
+				box.setAttribute('role', 'group');
 				box.setAttribute('aria-label', label);
 			} else {
 				for (const name of ['tabindex', 'role', 'aria-label']) box.removeAttribute(name);

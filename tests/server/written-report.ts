@@ -5,34 +5,12 @@ import { database } from '../../src/lib/server/db';
 import type { Viewer } from '../../src/lib/server/auth';
 import * as readings from '../../src/lib/server/readings';
 import * as reports from '../../src/lib/server/reports';
+import { tenReadings } from '../golden/readings';
 import { engineVersion, evaluate, type Readings, type Worksheet } from '../../src/lib/worksheets';
 
 // A report as two students would have it on the evening before it is due, made without a browser.
 
-/** Pressures in torr against boiling temperatures in degC: simulated from the physics with noise, not measured. */
-const measured: [string, string][] = [
-	['83.27', '399.2'],
-	['85.83', '440.7'],
-	['87.94', '479.4'],
-	['90.00', '519.7'],
-	['91.83', '559.5'],
-	['93.75', '597.7'],
-	['95.31', '638.7'],
-	['97.16', '679.6'],
-	['98.83', '719.4'],
-	['100.29', '758.7']
-];
-
-export const tenReadings: Readings = {
-	parameters: { p_b: '757.6' },
-	tables: {
-		readings: measured.map(([t, p], index) => ({
-			id: `row-${index}`,
-			cells: { t, p },
-			status: 'used' as const
-		}))
-	}
-};
+export { tenReadings };
 
 export const writtenSections: Record<string, string> = {
 	abstract: 'Water was boiled under ten pressures. The enthalpy is :value[H_vap] at :value[T_h].',

@@ -1,5 +1,5 @@
 import { createHash } from 'node:crypto';
-import * as experiments from '../experiments';
+import canonicalize from 'canonicalize';
 
 /**
  * The bytes that are hashed and kept: canonical JSON (RFC 8785) in UTF-8. What JSON cannot say is made plain first, so
@@ -7,7 +7,9 @@ import * as experiments from '../experiments';
  * pair becomes U+FFFD.
  */
 export function canonicalPart(value: unknown): Uint8Array {
-	return experiments.canonicalBytes(plain(value));
+	const text = canonicalize(plain(value));
+	if (text === undefined) throw new TypeError('This value has no JSON form.');
+	return Buffer.from(text, 'utf8');
 }
 
 export const sha256 = (bytes: Uint8Array): Buffer => createHash('sha256').update(bytes).digest();

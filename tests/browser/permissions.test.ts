@@ -33,7 +33,7 @@ async function cookieOf(viewer: Viewer | null): Promise<Record<string, string>> 
 }
 
 const fill = (path: string, params: Record<string, string>) =>
-	path.replaceAll(/[{[](\w+)[}\]]/g, (_, name: string) => {
+	path.replaceAll(/[{[]+(\w+)[}\]]+/g, (_, name: string) => {
 		const value = params[name];
 		if (value === undefined) throw new Error(`${path}: no ${name}`);
 		return encodeURIComponent(value);

@@ -235,10 +235,17 @@ describe('a whole margin', () => {
 
 	it('gathers what still crowds when every one is a line', () => {
 		const list = Array.from({ length: 30 }, (_, index) =>
-			entry(`e${index}`, 600, { height: 80, age: index })
+			entry(`e${index}`, 600, { height: 80, age: index, urgency: index < 2 ? 6 : 1 })
 		);
 		const placed = levelEntries(list, remarkRules);
-		expect(placed.filter(({ form }) => form === 'gathered').map(({ more }) => more)).toEqual([30]);
+		const gathered = placed.filter(({ form }) => form === 'gathered');
+		expect(gathered).toHaveLength(1);
+		expect(gathered[0]?.more).toBe(placed.filter(({ form }) => form === 'hidden').length + 1);
+		expect(Math.max(...placed.map(({ displaced }) => Math.abs(displaced)))).toBeLessThanOrEqual(168);
+		// What is most urgent is spoken for last.
+		expect(placed.filter(({ id }) => id === 'e0' || id === 'e1').every(({ form }) => form !== 'hidden')).toBe(
+			true
+		);
 		const opened = levelEntries(
 			list.map((item) => ({ ...item, opened: true })),
 			remarkRules

@@ -240,7 +240,10 @@ function foldOne(members: readonly Member[], forms: Form[], rules: LevelRules): 
 	return true;
 }
 
-/** Gathers the folded lines of the block that has most of them; false when no block has two. */
+/**
+ * Lets one entry speak for one more of its block: the least urgent line of the block that has most of them goes to
+ * the speaker that is there, or to the next least urgent line. False when no block has two.
+ */
 function gatherOne(members: readonly Member[], forms: Form[], more: number[]): boolean {
 	const blocks = new Map<string, Member[]>();
 	for (const member of members) {
@@ -251,10 +254,20 @@ function gatherOne(members: readonly Member[], forms: Form[], more: number[]): b
 	const largest = [...blocks.values()]
 		.filter((group) => group.length > 1)
 		.sort((a, b) => b.length - a.length || (a[0]?.index ?? 0) - (b[0]?.index ?? 0))[0];
-	const speaker = largest?.[0];
-	if (largest === undefined || speaker === undefined) return false;
+	if (largest === undefined) return false;
+	const present = largest.filter(({ index }) => forms[index] === 'gathered');
+	const lines = largest
+		.filter(({ index }) => forms[index] !== 'gathered')
+		.sort((a, b) => a.entry.urgency - b.entry.urgency || b.entry.age - a.entry.age || b.index - a.index);
+	const [speaker, other] = [...present, ...lines]
+		.slice(0, 2)
+		.sort(
+			(a, b) =>
+				Number(forms[b.index] === 'gathered') - Number(forms[a.index] === 'gathered') || a.index - b.index
+		);
+	if (speaker === undefined || other === undefined) return false;
 	forms[speaker.index] = 'gathered';
-	more[speaker.index] = largest.reduce((sum, { index }) => sum + (more[index] ?? 1), 0);
-	for (const { index } of largest.slice(1)) forms[index] = 'hidden';
+	forms[other.index] = 'hidden';
+	more[speaker.index] = (more[speaker.index] ?? 1) + (more[other.index] ?? 1);
 	return true;
 }

@@ -160,12 +160,12 @@ export function laneOf(sections: readonly SheetSection[], evaluation: Evaluation
 	);
 }
 
-/** The lane is 104 px wide: value and departure, the unit left to the sentence. */
+/** The lane is 104 px wide: value and departure on one line, the unit left to the sentence. */
 function withoutUnit({ recomputed, short }: StatedLine): string {
 	if (short === '') return '';
 	const number =
 		/^[\u2212+-]?[\d.,]+(?:\(\d+\))?(?:\u2009?×\u2009?10\S*)?/u.exec(recomputed)?.[0] ?? recomputed;
-	return `${number}${short.slice(recomputed.length)}`;
+	return `${number}${short.slice(recomputed.length)}`.replace(/[ \u2009]/gu, '\u00a0');
 }
 
 /** '30', '7.5': points from hundredths. */

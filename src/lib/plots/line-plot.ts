@@ -62,6 +62,8 @@ const panelGap = 26;
 const residualShare = 0.28;
 const tickLength = { major: 7, minor: 4 };
 const pointSize = 7;
+/** px that a label takes along its axis with the air it needs; labels are 13 px high */
+const labelRoom = { x: 72, y: 30, residual: 17 };
 
 /**
  * A plot with two axes, ticks outward, open points with capless error bars, line, band, and a residual panel below.
@@ -84,7 +86,7 @@ export function describePlot(
 		{
 			start: margin.left,
 			end: width - margin.right,
-			labelRoom: 88
+			labelRoom: labelRoom.x
 		}
 	);
 	const y = makeAxis(
@@ -95,7 +97,7 @@ export function describePlot(
 		{
 			start: mainFoot,
 			end: margin.top,
-			labelRoom: 52
+			labelRoom: labelRoom.y
 		}
 	);
 	const residual = withResiduals
@@ -105,7 +107,7 @@ export function describePlot(
 					// prettier-ignore
 					start: foot,
 					end: foot - panel,
-					labelRoom: 34,
+					labelRoom: labelRoom.residual,
 					symmetric: true
 				}
 			)

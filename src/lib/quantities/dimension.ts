@@ -20,7 +20,10 @@ export function raiseDimension(a: Dimension, exponent: number): Dimension {
 }
 
 export function sameDimension(a: Dimension, b: Dimension): boolean {
-	return a === b || a.every((exponent, i) => exponent === b[i]);
+	if (a === b) return true;
+	// a plain loop: this is asked several times for every cell of every row
+	for (let i = 0; i < a.length; i += 1) if (a[i] !== b[i]) return false;
+	return true;
 }
 
 export function isDimensionless(a: Dimension): boolean {

@@ -27,6 +27,15 @@ export function evaluate(worksheet: Worksheet, readings: Readings): Evaluation {
 	};
 }
 
+/** The sample calculations alone, with rows chosen by table name. */
+export function workingsFor(
+	worksheet: Worksheet,
+	readings: Readings,
+	chosenRows: Readonly<Record<string, string>>
+): Evaluation['workings'] {
+	return showWorkings(calculate(worksheet, readings), chosenRows);
+}
+
 function showQuantities(calculation: Calculation): Record<string, ShownQuantity> {
 	const quantities: Record<string, ShownQuantity> = {};
 	const constants = new Map(calculation.worksheet.constants.map(({ name, value }) => [name, String(value)]));

@@ -1,5 +1,5 @@
 import {
-	combinedUncertainty,
+	standardUncertainty as standardUncertaintyOf,
 	differenceIn,
 	numberText,
 	parseUnit,
@@ -58,7 +58,7 @@ function showCell(state: RowState, column: ColumnDefinition): ShownCell {
 	if (!quantity)
 		return { text: column.formula === null ? typed : '', value: null, standardUncertainty: null, problem };
 	const unit = parseUnit(column.unit);
-	const { standard } = combinedUncertainty(quantity);
+	const standard = standardUncertaintyOf(quantity);
 	const standardUncertainty = standard === 0 ? null : differenceIn(standard, unit);
 	if (column.formula === null) {
 		const plain = plainDigits(typed);

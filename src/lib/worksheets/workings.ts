@@ -25,11 +25,18 @@ import { plainDigits, showBudget } from './shown';
 import { typeset } from './typeset';
 import type { Formula, SampleCalculation } from './types';
 
-/** A sample calculation for every computed column (its first row in use), every fit's parameters and every result. */
-export function showWorkings(calculation: Calculation): Record<string, SampleCalculation> {
+/**
+ * A sample calculation for every computed column, every fit's parameters and every result. A column's is of the row chosen
+ * for its table (table name -> row id) where that one counts, else of the first row in use.
+ */
+export function showWorkings(
+	calculation: Calculation,
+	chosenRows: Readonly<Record<string, string>> = {}
+): Record<string, SampleCalculation> {
 	const workings: Record<string, SampleCalculation> = {};
 	for (const table of calculation.worksheet.tables) {
-		const row = calculation.tables.get(table.name)?.find((state) => state.counts);
+		const counting = calculation.tables.get(table.name)?.filter((state) => state.counts) ?? [];
+		const row = counting.find((state) => state.row.id === chosenRows[table.name]) ?? counting[0];
 		if (!row) continue;
 		for (const column of table.columns) {
 			const value = row.values.get(column.name);

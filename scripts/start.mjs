@@ -60,6 +60,9 @@ async function start() {
 		return { said: parts.length === 0 ? 'everything local' : `from outside: ${parts.join(', ')}`, value };
 	});
 
+	// Loaded while the database program starts: nothing else uses this process meanwhile.
+	if (!given.S3_ENDPOINT) void import('./object-store.mjs').catch(() => undefined);
+	if (!given.SMTP_URL) void import('./mail-catcher.mjs').catch(() => undefined);
 	const database = await openDatabase(given);
 	/** @type {NodeJS.ProcessEnv} */
 	const env = { ...process.env, ...given, DATABASE_URL: database.applicationUrl };
@@ -68,12 +71,13 @@ async function start() {
 	const withDemo = hasDemo() && (given.DEMO ? given.DEMO === 'yes' : database.local);
 	await step('Tables', async (say) => {
 		say('bringing up to date');
-		const { bringUpToDate } = await import('./start/schema.mjs');
-		let applied = await bringUpToDate(database.ownerUrl, database.applicationUrl);
+		const { bringLocalUpToDate, bringUpToDate } = await import('./start/schema.mjs');
+		const update = database.local ? bringLocalUpToDate : bringUpToDate;
+		let applied = await update(database.ownerUrl, database.applicationUrl);
 		// Half a demo: nobody has worked here yet, since serving begins after it.
 		if (withDemo && database.local && (await demoState(database.ownerUrl)) === 'interrupted') {
 			await database.startOver();
-			applied = await bringUpToDate(database.ownerUrl, database.applicationUrl);
+			applied = await update(database.ownerUrl, database.applicationUrl);
 		}
 		return {
 			said: applied === 0 ? 'up to date' : `${applied} ${applied === 1 ? 'migration' : 'migrations'} applied`,

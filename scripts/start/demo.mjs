@@ -1,38 +1,17 @@
 import { existsSync } from 'node:fs';
 import { join } from 'node:path';
-import postgres from 'postgres';
 import { root } from './folder.mjs';
 import { StartProblem } from './problem.mjs';
 import { run } from './run.mjs';
-
-// Whether the demo was loaded is remembered beside what was loaded, so that the two cannot disagree.
-
-/**
- * @param {string} ownerUrl
- * @param {(sql: postgres.Sql) => Promise<Result>} work
- * @returns {Promise<Result>}
- * @template Result
- */
-async function asOwner(ownerUrl, work) {
-	const sql = postgres(ownerUrl, { max: 1, onnotice: () => undefined });
-	try {
-		await sql`create schema if not exists setup`;
-		await sql`create table if not exists setup.loaded (name text primary key, began timestamptz not null default now(), ended timestamptz)`;
-		return await work(sql);
-	} finally {
-		await sql.end();
-	}
-}
+import { factsOf, rememberFact } from './setup-facts.mjs';
 
 /**
  * @param {string} ownerUrl
  * @returns {Promise<'loaded' | 'interrupted' | 'absent'>}
  */
-export function demoState(ownerUrl) {
-	return asOwner(ownerUrl, async (sql) => {
-		const [row] = await sql`select ended from setup.loaded where name = 'demo'`;
-		return row ? (row.ended ? 'loaded' : 'interrupted') : 'absent';
-	});
+export async function demoState(ownerUrl) {
+	const { demo } = await factsOf(ownerUrl);
+	return demo === undefined ? 'absent' : demo === 'loaded' ? 'loaded' : 'interrupted';
 }
 
 /**
@@ -57,7 +36,7 @@ export async function loadDemo(ownerUrl, env, say) {
 		}
 	);
 	if (code !== 0) throw new StartProblem(`The demo could not be loaded:\n${output.trim()}`);
-	await asOwner(ownerUrl, (sql) => sql`update setup.loaded set ended = now() where name = 'demo'`);
+	await rememberFact(ownerUrl, 'demo', 'loaded');
 }
 
 /** @returns {Promise<{ name: string, email: string, password: string, role: string, why: string }[]>} none when there is no demo */

@@ -1,13 +1,31 @@
 import { join } from 'node:path';
-import { root } from '../start/folder.mjs';
+import { kept, root } from '../start/folder.mjs';
 import { run } from '../start/run.mjs';
 
 const bin = (/** @type {string} */ path) => join(root, 'node_modules', path);
 
 /** Each counts as one test. @type {Record<string, string[][]>} commands of Node.js, one after the other */
 export const gates = {
-	format: [[bin('prettier/bin/prettier.cjs'), '--check', '.']],
-	lint: [[bin('eslint/bin/eslint.js'), '.', '--max-warnings=0']],
+	format: [
+		[
+			bin('prettier/bin/prettier.cjs'),
+			'--check',
+			'.',
+			'--cache',
+			'--cache-strategy=content',
+			`--cache-location=${kept('prettier.cache')}`
+		]
+	],
+	lint: [
+		[
+			bin('eslint/bin/eslint.js'),
+			'.',
+			'--max-warnings=0',
+			'--cache',
+			'--cache-strategy=content',
+			`--cache-location=${kept('eslint.cache')}`
+		]
+	],
 	types: [
 		[bin('@sveltejs/kit/svelte-kit.js'), 'sync'],
 		[bin('svelte-check/bin/svelte-check'), '--tsconfig', './tsconfig.json', '--output', 'human']

@@ -8,7 +8,7 @@ import { builtApplication } from './running-server';
 import { removeFolder, sweep, throwAwayCluster, throwAwayFolder } from '../scripts/throw-away';
 
 /** Starts what server and browser tests need, once, unless the environment already names it. */
-export async function setup(project: TestProject): Promise<() => Promise<void>> {
+export async function setup(project?: Pick<TestProject, 'name'>): Promise<() => Promise<void>> {
 	const stops: (() => Promise<void>)[] = [];
 	const stopAll = async () => {
 		for (const stop of stops.splice(0).reverse()) await stop();
@@ -56,7 +56,7 @@ export async function setup(project: TestProject): Promise<() => Promise<void>> 
 				MAIL_FROM: 'Meniscus <meniscus@example.test>'
 			});
 		}
-		if (project.name === 'browser') {
+		if (project?.name === 'browser') {
 			// Once for all files, and outside any test's time.
 			if (!process.env['MENISCUS_BUILD']) set(stops, { MENISCUS_BUILD: await builtApplication() });
 			const chromium = findChromium();

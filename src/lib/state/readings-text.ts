@@ -1,3 +1,4 @@
+import { parseUnit, unitText } from '$lib/quantities';
 import { splitDelimited, type Readings, type UncertaintyComponent, type Worksheet } from '$lib/worksheets';
 import type { LiveRefusal, LiveState } from './live-connection';
 
@@ -68,11 +69,16 @@ export function statusOf(
 	}
 }
 
+/** A worksheet's unit as it is shown: "°C" for "degC". */
+export function shownUnit(unit: string): string {
+	return unitText(parseUnit(unit));
+}
+
 /** "0.1 K each reading, 0.2 K shared": the components of a standard uncertainty in few words. */
 export function componentsInWords(components: readonly UncertaintyComponent[]): string {
 	return components
 		.map(({ size, unit, scope, distribution, acts }) => {
-			const amount = acts === 'gain' ? `${size * 100} %` : `${size} ${unit}`;
+			const amount = acts === 'gain' ? `${size * 100} %` : `${size} ${shownUnit(unit)}`;
 			const reach = scope === 'reading' ? 'each reading' : 'shared';
 			return `${distribution === 'normal' ? '' : '±'}${amount} ${reach}`;
 		})

@@ -2,7 +2,8 @@ import { sql } from 'drizzle-orm';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import * as Y from 'yjs';
 import { readReadings, readText, seedSection, setParameter } from '../../src/lib/collab';
-import { closeDatabase, database } from '../../src/lib/server/db';
+import { v7 as uuidv7 } from 'uuid';
+import { closeDatabase, database, schema } from '../../src/lib/server/db';
 import * as readings from '../../src/lib/server/readings';
 import { freshDatabase, type FreshDatabase } from '../harness';
 import { makeBench, type Bench } from './live-course';
@@ -148,6 +149,62 @@ describe('what may be seen', () => {
 		expect(await access(bench.stranger)).toBeNull();
 		expect(await access(bench.grader, bench.resultsId)).toBeNull();
 		expect(await access(bench.mate, bench.abstractId)).toBeNull();
+	});
+});
+
+describe('freezing', () => {
+	const freezesAt = async (documentId: string) => {
+		const [row] = await database().execute<{ at: Date | string | null }>(
+			sql`select frozen_at as at from documents where id = ${documentId}`
+		);
+		return row?.at ? new Date(row.at).toISOString() : null;
+	};
+	const closes = (assignmentId: string, local: string) =>
+		database().execute(
+			sql`update assignments set due_local = ${local}::timestamp, closes_local = ${local}::timestamp where id = ${assignmentId}`
+		);
+	const extend = (own: Bench, who: { user?: string; team?: string }, local: string) =>
+		database()
+			.insert(schema.extensions)
+			.values({
+				id: uuidv7(),
+				assignmentId: own.assignmentId,
+				userId: who.user ?? null,
+				teamId: who.team ?? null,
+				dueLocal: local,
+				closesLocal: local,
+				reason: 'Ill.',
+				grantedBy: own.instructor.id
+			});
+
+	it("is set when documents are made, in the course's zone", async () => {
+		const own = await makeBench();
+		// Halifax is four hours behind in December.
+		expect(await freezesAt(own.resultsId)).toBe('2199-12-12T21:00:00.000Z');
+	});
+
+	it('follows the dates, summer time included, and refuses the append at that moment', async () => {
+		const own = await makeBench();
+		await closes(own.assignmentId, '2026-07-01 17:00:00');
+		await readings.setFreezing(database());
+		expect(await freezesAt(own.resultsId)).toBe('2026-07-01T20:00:00.000Z');
+		expect(await append(own.resultsId, own.student.id)).toBeNull();
+		await closes(own.assignmentId, '2199-07-01 17:00:00');
+		await readings.setFreezing(database());
+		expect(await append(own.resultsId, own.student.id)).toEqual({ seq: 1 });
+	});
+
+	it("is an author's own for own sections, and the latest member's for the team", async () => {
+		const own = await makeBench();
+		await closes(own.assignmentId, '2026-07-01 17:00:00');
+		await extend(own, { user: own.mate.id }, '2199-08-01 17:00:00');
+		await readings.setFreezing(database());
+		expect(await append(own.abstractId, own.student.id)).toBeNull();
+		expect(await append(own.resultsId, own.student.id)).toEqual({ seq: 1 });
+		await extend(own, { team: own.teamId }, '2199-08-02 17:00:00');
+		await readings.setFreezing(database());
+		expect(await append(own.abstractId, own.student.id)).toEqual({ seq: 1 });
+		expect(await freezesAt(own.resultsId)).toBe('2199-08-02T20:00:00.000Z');
 	});
 });
 

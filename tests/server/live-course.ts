@@ -7,6 +7,7 @@ import type { Viewer } from '../../src/lib/server/auth';
 
 export interface Bench {
 	courseId: string;
+	assignmentId: string;
 	teamId: string;
 	workId: string;
 	student: Viewer;
@@ -94,8 +95,8 @@ export async function makeBench(): Promise<Bench> {
 		rubricVersionId,
 		title: 'Vapour pressure',
 		position: 1,
-		dueLocal: '2026-12-10 17:00:00',
-		closesLocal: '2026-12-12 17:00:00'
+		dueLocal: '2199-12-10 17:00:00',
+		closesLocal: '2199-12-12 17:00:00'
 	});
 	await db.insert(schema.work).values({ id: workId, assignmentId, teamId });
 	const documents = await db.transaction((tx) =>
@@ -112,6 +113,7 @@ export async function makeBench(): Promise<Bench> {
 	const idOf = (key: string) => documents.find((document) => document.key === key)?.id ?? '';
 	return {
 		courseId,
+		assignmentId,
 		teamId,
 		workId,
 		student,

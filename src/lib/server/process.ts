@@ -1,10 +1,12 @@
 import type { IncomingMessage } from 'node:http';
 import type { Duplex } from 'node:stream';
 import * as accounts from './accounts';
-import { closeDatabase } from './db';
+import { closeDatabase, database } from './db';
+import * as files from './files';
 import * as jobs from './jobs';
 import { logger } from './logger';
 import * as mail from './mail';
+import * as readings from './readings';
 
 /** What scripts/serve.mjs finds to hand sockets to. */
 interface Live {
@@ -28,11 +30,16 @@ const tasks: jobs.Tasks = {
 	tidy: async () => {
 		await mail.sweep();
 		await accounts.tidy();
+		await files.tidy();
+	},
+	// Dates move and extensions are granted: what is closed follows within a minute.
+	freeze: async () => {
+		await readings.setFreezing(database());
 	}
 };
 
 /** Works through the queue in this process. */
-export const startJobs = () => jobs.start(tasks, ['tidy']);
+export const startJobs = () => jobs.start(tasks, ['tidy', 'freeze']);
 
 /**
  * Starts what one process does beside answering requests: live editing and the job queue. Ends it at shutdown. Rejects

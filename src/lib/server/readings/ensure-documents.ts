@@ -2,6 +2,7 @@ import { sql } from 'drizzle-orm';
 import { v7 as uuidv7 } from 'uuid';
 import type { OutlineSection } from '$lib/worksheets';
 import type { Transaction } from '../db';
+import { setFreezing } from './set-freezing';
 
 export interface DocumentRow {
 	id: string;
@@ -36,6 +37,7 @@ export async function ensureDocuments(
 	await tx.execute(sql`
 		insert into documents (id, work_id, author_id, kind, key) values ${sql.join(values, sql`, `)}
 		on conflict on constraint documents_one do nothing`);
+	await setFreezing(tx, workId);
 	const rows = await tx.execute<{
 		id: string;
 		kind: DocumentRow['kind'];

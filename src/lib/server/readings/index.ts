@@ -16,3 +16,4 @@ export { countRecords, fileRows, largestFile, liveRows } from './live-limits';
 export { evaluation, filesOf, openBench, storedReadings, type Bench } from './open-bench';
 export { openDocument, versionsOf, type DocumentHead, type ListedVersion } from './open-document';
 export { takeFile, type TakenFile } from './take-file';
+export { setFreezing } from './set-freezing';

@@ -21,10 +21,7 @@ export async function demoState(ownerUrl) {
  * @param {(text: string) => void} say
  */
 export async function loadDemo(ownerUrl, env, say) {
-	await asOwner(
-		ownerUrl,
-		(sql) => sql`insert into setup.loaded (name) values ('demo') on conflict do nothing`
-	);
+	await rememberFact(ownerUrl, 'demo', 'loading');
 	say('loading');
 	const { code, output } = await run(
 		process.execPath,

@@ -43,9 +43,17 @@ export class Marking {
 	#alias: string;
 	#running: Promise<void> | null = null;
 
-	readonly levels = $derived(this.state ? levelsWith(this.state, this.#queue) : {});
+	/** What is unsent and speaks of something that was changed elsewhere. */
+	readonly disputed = $derived(
+		this.status === 'conflict'
+			? this.#queue.filter((write) => !this.state || !stillApplies(write, this.state))
+			: []
+	);
+	/** While a choice is asked, what is disputed shows as the server has it. */
+	readonly #shown = $derived(this.#queue.filter((write) => !this.disputed.includes(write)));
+	readonly levels = $derived(this.state ? levelsWith(this.state, this.#shown) : {});
 	readonly remarks = $derived(
-		this.state ? remarksWith(this.state, this.#queue, this.state.remarks.at(-1)?.at ?? '') : []
+		this.state ? remarksWith(this.state, this.#shown, this.state.remarks.at(-1)?.at ?? '') : []
 	);
 	readonly unsent = $derived(this.#queue.length);
 	readonly readonly = $derived(

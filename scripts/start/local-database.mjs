@@ -25,7 +25,7 @@ export const ports = {
 export async function openLocalDatabase(say) {
 	let postgres = await findPostgres();
 	if (!postgres) {
-		say('not found, installing');
+		say('not found');
 		postgres = await installPostgres(say);
 	}
 	const data = await dataFolder(kept('pg'));

@@ -36,11 +36,18 @@ export function offerLinks(evaluation: Evaluation | null, before: string, asked:
 	}
 	if (!asked) return null;
 	const word = /[\p{L}_][\p{L}\p{N}_.]*$/u.exec(before)?.[0] ?? '';
-	const named = suggestLinks(evaluation, word);
+	const named = measuredFirst(evaluation, suggestLinks(evaluation, word));
 	// A word that names nothing is just the end of the sentence: everything is offered behind it.
 	const from = before.length - (named.length > 0 ? word.length : 0);
-	const links = named.length > 0 ? named : suggestLinks(evaluation, '');
+	const links = named.length > 0 ? named : measuredFirst(evaluation, suggestLinks(evaluation, ''));
 	return links.length === 0 ? null : { from, links, manner: 'link' };
+}
+
+/** Constants are rarely what a sentence is about: they come after everything that was found. */
+function measuredFirst(evaluation: Evaluation, links: LinkSuggestion[]): LinkSuggestion[] {
+	const isExact = ({ kind, name }: LinkSuggestion) =>
+		kind === 'value' && evaluation.quantities[name]?.standardUncertainty === null;
+	return [...links.filter((link) => !isExact(link)), ...links.filter(isExact)];
 }
 
 /** The directive as it is put into the text: what is placed gets a line of its own. */

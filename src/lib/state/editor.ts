@@ -45,10 +45,11 @@ const sheet = EditorView.theme({
 	'.mk-quiet': { color: 'var(--quiet)' },
 	'.mk-strong, .mk-heading': { fontWeight: '600' },
 	'.mk-slanted': { fontStyle: 'italic' },
-	'.mk-formula': { fontFamily: 'var(--mono)', fontSize: '0.88em' },
+	'.mk-formula': { fontFamily: 'var(--mono)', fontSize: '0.88em', lineHeight: '1' },
 	'.mk-link': {
 		fontFamily: 'var(--mono)',
 		fontSize: '0.88em',
+		lineHeight: '1',
 		borderBottom: '1px solid var(--liquid)'
 	},
 	'.cm-tooltip': {
@@ -56,17 +57,21 @@ const sheet = EditorView.theme({
 		borderRadius: '2px',
 		backgroundColor: 'var(--page)',
 		color: 'var(--ink)',
-		boxShadow: '0 0 0 8px var(--page)'
+		boxShadow: '0 0 0 8px var(--page)',
+		maxWidth: 'min(28rem, calc(100vw - 2.5rem))'
 	},
 	'.cm-tooltip.cm-tooltip-autocomplete > ul': {
 		fontFamily: 'var(--sans)',
 		fontSize: '1rem',
-		maxHeight: '15rem'
+		maxHeight: '15rem',
+		maxWidth: '100%',
+		minWidth: '0'
 	},
 	'.cm-tooltip.cm-tooltip-autocomplete > ul > li': {
 		minHeight: '2.75rem',
 		padding: '0.25rem 0.75rem',
-		lineHeight: '1.25rem'
+		lineHeight: '1.25rem',
+		whiteSpace: 'normal'
 	},
 	'.cm-tooltip.cm-tooltip-autocomplete > ul > li[aria-selected]': {
 		background: 'var(--chosen)',
@@ -107,7 +112,9 @@ export function openEditor(options: EditorOptions): SectionEditor {
 					...yUndoManagerKeymap,
 					...standardKeymap
 				]),
+				// Nothing is chosen until an arrow key does: Enter after a number that is asked about begins a line, as ever.
 				autocompletion({
+					selectOnOpen: false,
 					override: [links],
 					icons: false,
 					aboveCursor: false,

@@ -9,11 +9,10 @@ import {
 	renderSection,
 	type Anchor,
 	type Projection,
+	type RenderedSection,
 	type StatedLine
 } from '$lib/reports';
 import type { Evaluation, Readings } from '$lib/worksheets';
-import { blockAnchors, type AnchorKind, type BlockAnchor } from '../report/anchors';
-import type { ReportSection } from '../report/sections';
 
 /** What the server gives of a report under marking. */
 export interface SheetData {
@@ -48,9 +47,18 @@ export interface SheetCriterion {
 	levels: { level: number; text: string; pointsHundredths: number }[];
 }
 
+/** A section as it is drawn. `position` counts from 1 and numbers its blocks. */
+export interface DrawnSection {
+	position: number;
+	key: string;
+	title: string;
+	owner: 'author' | 'team';
+	rendered: RenderedSection;
+}
+
 /** A report ready to be read: drawn sections, and their plain text for anchors. */
 export interface ReadReport {
-	sections: ReportSection[];
+	sections: DrawnSection[];
 	projections: Map<number, Projection>;
 	/** words of the whole, section by section, for the scale */
 	lengths: Map<number, number>;
@@ -71,14 +79,18 @@ export function readReport(sections: readonly SheetSection[], evaluation: Evalua
 	};
 }
 
-export const kindWords: { kind: RemarkKind; word: string; look: AnchorKind }[] = [
+/** How the words of a remark are underlined; stated values have a rule of their own. */
+export type RemarkLook = 'correct' | 'question' | 'note' | 'well-done';
+export type MarkLook = RemarkLook | 'stated';
+
+export const kindWords: { kind: RemarkKind; word: string; look: RemarkLook }[] = [
 	{ kind: 'to correct', word: 'To correct', look: 'correct' },
 	{ kind: 'question', word: 'Question', look: 'question' },
 	{ kind: 'note', word: 'Note', look: 'note' },
 	{ kind: 'well done', word: 'Well done', look: 'well-done' }
 ];
 
-export const lookOf = (kind: RemarkKind): 'correct' | 'question' | 'note' | 'well-done' =>
+export const lookOf = (kind: RemarkKind): RemarkLook =>
 	kind === 'to correct' ? 'correct' : kind === 'well done' ? 'well-done' : kind;
 
 /** Where a remark's words stand in the report; the section's first block when they cannot be found. */
@@ -103,25 +115,28 @@ export function placeOf(anchor: RemarkAnchor | null, report: ReadReport): Remark
 	};
 }
 
-export function marksOf(
-	remark: { id: string; look: AnchorKind; section: number; chosen?: boolean; entry?: string },
-	place: { start: number; end: number },
+/** Words to be marked, with the text they are counted in. */
+export interface MarkedWords {
+	anchor: {
+		id: string;
+		kind: MarkLook;
+		section: number;
+		start: number;
+		end: number;
+		chosen?: boolean;
+		entry?: string;
+	};
+	projection: Projection;
+}
+
+/** None when the words are not there. */
+export function markedWords(
+	anchor: Omit<MarkedWords['anchor'], 'start' | 'end'>,
+	{ start, end }: { start: number; end: number },
 	report: ReadReport
-): BlockAnchor[] {
-	const projection = report.projections.get(remark.section);
-	if (!projection || place.end <= place.start) return [];
-	return blockAnchors(
-		{
-			id: remark.id,
-			kind: remark.look,
-			section: remark.section,
-			start: place.start,
-			end: place.end,
-			...(remark.chosen ? { chosen: true } : {}),
-			...(remark.entry ? { entry: remark.entry } : {})
-		},
-		projection
-	);
+): MarkedWords[] {
+	const projection = report.projections.get(anchor.section);
+	return projection && end > start ? [{ anchor: { ...anchor, start, end }, projection }] : [];
 }
 
 /** Anchor of selected words, as it is stored; null when only white space is selected. */

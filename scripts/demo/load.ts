@@ -91,7 +91,7 @@ async function write(
 	const written: Written[] = [];
 	for (const name of team.students) {
 		const author = person(course, name);
-		const quality = Math.min(3.9, Math.max(1.2, teamQuality + 0.6 * random.normal()));
+		const quality = Math.min(3.4, Math.max(1.2, teamQuality + 0.6 * random.normal()));
 		const own = writeReport(random, quality);
 		const { workId } = await courses.startWork({ viewer: author }, { assignment });
 		const report = await reports.openReport(author, workId);

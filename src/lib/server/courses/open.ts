@@ -134,7 +134,7 @@ export async function sections(viewer: Viewer, courseId: string): Promise<LabSec
 			(select array_agg(u.name order by u.name) from team_members tm join users u on u.id = tm.user_id where tm.team_id = t.id and tm.during @> now()) as members
 		from ${labSections} ls left join ${teams} t on t.lab_section_id = ls.id
 		where ls.course_id = ${courseId} and ${allowed('course.see', viewer.id, courseId)}
-		order by ls.name, t.name`);
+		order by ls.id, t.name`);
 	const byId = new Map<string, LabSectionRow>();
 	for (const row of rows) {
 		const { id, name, meets, students } = row;

@@ -63,6 +63,8 @@ export class ReadingsSheet {
 	ready = $state(false);
 	canUndo = $state(false);
 	canRedo = $state(false);
+	/** acts that can be undone: the same number as before means that nothing was done since */
+	undoDepth = $state(0);
 	others: Presence[] = $state.raw([]);
 	/** readings changed here that are not confirmed */
 	#here = $state(0);
@@ -149,6 +151,7 @@ export class ReadingsSheet {
 		};
 		const stack = () => {
 			this.canUndo = undo.canUndo();
+			this.undoDepth = undo.undoStack.length;
 			this.canRedo = undo.canRedo();
 		};
 		const presence = () => {

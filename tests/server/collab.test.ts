@@ -229,6 +229,7 @@ describe('a refused edit', () => {
 		expect(readText(student.doc)).toBe('Kept. ');
 		await until('turned away', () => mate.refusal === 'not-yours');
 		expect(mate.doc).not.toBe(before);
+		expect(mate.unsent).toMatchObject({ here: { text: 'Kept. Too late.' } });
 		expect(await textInLog(bench.resultsId)).toBe('Kept. ');
 		type(student, 'Goes on.');
 		await stored(student);

@@ -340,6 +340,13 @@ export class LiveConnection<Content = unknown> {
 
 	#refuse(refusal: LiveRefusal): void {
 		this.#refusal = refusal;
+		// What is stored may not be seen any more; what this person typed and nobody took is still theirs to copy.
+		const left = this.#earlier.at(-1)?.doc ?? (this.waiting > 0 ? this.#doc : null);
+		if (refusal === 'not-yours' && left) {
+			const nothing = new Y.Doc();
+			this.#unsent = { here: this.#options.content(left), stored: this.#options.content(nothing) };
+			nothing.destroy();
+		}
 		this.#provider.configuration.websocketProvider.disconnect();
 		this.#options.changed();
 	}

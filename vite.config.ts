@@ -12,7 +12,14 @@ export default defineConfig({
 		projects: [
 			{
 				resolve: { alias },
-				test: { name: 'unit', include: ['tests/unit/**/*.test.ts'], environment: 'node' }
+				// Pure functions keep nothing between files: loading each module once a worker takes a third of the time.
+				test: {
+					name: 'unit',
+					include: ['tests/unit/**/*.test.ts'],
+					environment: 'node',
+					pool: 'threads',
+					isolate: false
+				}
 			},
 			{
 				resolve: { alias },

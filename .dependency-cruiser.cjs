@@ -90,7 +90,7 @@ const owners = [
 	['@stdlib/[^/]+', ['quantities', 'statistics', 'regression']],
 	['d3-[^/]+', ['plots', 'components/figures', 'components/shared']],
 	['unified|remark-[^/]+|rehype-[^/]+|unist-util-visit|approx-string-match', ['reports']],
-	['katex', ['reports', 'worksheets', 'components/figures', 'components/shared']],
+	['katex', ['reports', 'worksheets', 'components/figures', 'components/shared', 'components/report']],
 	['papaparse', ['worksheets']],
 	['zod', ['contracts', 'server', 'worksheets']],
 	['@tanstack/[^/]+', ['state', 'components/shared']],

@@ -1,3 +1,5 @@
+/** A live document as the rest of the application knows it. */
+export type { Doc as SharedDocument } from 'yjs';
 export {
 	readReadings,
 	readingsParts,

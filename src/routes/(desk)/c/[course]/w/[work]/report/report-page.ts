@@ -1,9 +1,8 @@
 import type { ScaleSection } from '$lib/components/shared/scale';
-import { sectionText } from '$lib/collab';
+import { sectionText, type SharedDocument } from '$lib/collab';
 import type { RenderedBlock } from '$lib/reports';
 import { sectionId } from '$lib/components/report';
 import type { DrawnSection } from '$lib/state/report.svelte';
-import type * as Y from 'yjs';
 
 /** The glass at the left: a section for each graduation, its checks as minor ticks. */
 export function scaleOf(sections: readonly DrawnSection[]): ScaleSection[] {
@@ -25,7 +24,7 @@ export function scaleOf(sections: readonly DrawnSection[]): ScaleSection[] {
 }
 
 /** Puts a known name into a placed link that named nothing. */
-export function mendLink(doc: Y.Doc, block: RenderedBlock, name: string): void {
+export function mendLink(doc: SharedDocument, block: RenderedBlock, name: string): void {
 	if (block.kind === 'prose') return;
 	const text = sectionText(doc);
 	const source = text.toString().slice(block.start, block.end);

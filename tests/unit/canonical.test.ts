@@ -7,7 +7,7 @@ const text = (value: unknown): string => Buffer.from(canonicalPart(value)).toStr
 describe('canonical JSON', () => {
 	it('is that of RFC 8785, section 3.2.2 (its example, copied by value)', () => {
 		const value = {
-			numbers: [333333333.33333329, 1e30, 4.5, 2e-3, 0.000000000000000000000000001],
+			numbers: [Number('333333333.33333329'), 1e30, 4.5, 2e-3, 0.000000000000000000000000001],
 			string: '\u20ac$\u000F\u000aA\'\u0042\u0022\u005c\\"/',
 			literals: [null, true, false]
 		};

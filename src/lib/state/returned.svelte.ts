@@ -31,7 +31,6 @@ export function readRemarks(report: string): ReadInView {
 
 export type ReplyStatus = { state: 'storing' } | { state: 'stopped'; why: string };
 
-// eslint-disable-next-line svelte/prefer-svelte-reactivity -- an instant, read once
 const now = () => new Date().toISOString();
 
 /** Replies to the remarks of one's own report: shown at once, sent under an id made here, repeatable until they arrive. */

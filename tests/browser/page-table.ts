@@ -60,7 +60,8 @@ export const pageRows: Record<string, PageRow> = {
 	'/(desk)/c/[course]/sitting/[alias]/[sheet]': {
 		stage: 'handed in',
 		params: (s) => ({ course: s.slug, alias: s.alias, sheet: 'report' }),
-		answers: { ...closed, student: 403, grader: 200, instructor: 403 }
+		// An alias tells nobody but the grader anything, not even whether it is one.
+		answers: { ...closed, grader: 200 }
 	},
 	'/(desk)/c/[course]/w/[work]/bench': {
 		stage: 'draft',
@@ -92,6 +93,29 @@ export const pageRows: Record<string, PageRow> = {
 		params: () => ({ part: 'accounts' }),
 		answers: { ...closed, administrator: 200 }
 	},
-	'/(door)/sign-in': { stage: 'draft', answers: open },
+	// Whoever is in already is sent to the desk.
+	'/(door)/sign-in': { stage: 'draft', answers: { nobody: 200, else: 303 } },
+	'/(door)/sign-out': { stage: 'draft', answers: { nobody: 303, else: 200 } },
+	'/(door)/join/[[words]]': {
+		stage: 'draft',
+		params: () => ({ words: 'no-such-words-here' }),
+		answers: open
+	},
+	// Made-up links: what they open is told by the page, alike for everyone.
+	'/(door)/invitation/[token]': {
+		stage: 'draft',
+		params: () => ({ token: 'x'.repeat(32) }),
+		answers: { else: 404 }
+	},
+	'/(door)/verify/[token]': {
+		stage: 'draft',
+		params: () => ({ token: 'x'.repeat(32) }),
+		answers: { else: 404 }
+	},
+	'/(door)/reset/[token]': {
+		stage: 'draft',
+		params: () => ({ token: 'x'.repeat(32) }),
+		answers: { else: 404 }
+	},
 	'/(door)/reset': { stage: 'draft', answers: open }
 };

@@ -37,7 +37,10 @@ export interface Scene extends MadeCourse {
 	sitting: string;
 	kept: string;
 	file: string;
+	/** document of the team's readings */
 	readings: string;
+	/** document of the author's abstract */
+	abstract: string;
 	results: unknown;
 	engine: string;
 }
@@ -83,6 +86,8 @@ const instructorOnly = (status = 200) => ({
 });
 /** inviting is an administrator's too: somebody has to name the first instructor */
 const inviters = (status = 200) => ({ ...instructorOnly(status), administrator: status });
+/** by report: only its author and the section's grader know that it is there */
+const ofReport = { ...closed, student: 403, grader: 403, instructor: 200 };
 const signedIn = (status = 200) => ({ nobody: 401, else: status });
 const later = { dueLocal: '2030-01-04T17:00', closesLocal: '2030-01-06T17:00' };
 const anchor = {
@@ -104,7 +109,8 @@ export const apiRows: Record<string, Row> = {
 	'POST /account/memberships': {
 		stage: 'draft',
 		call: () => ({ body: { words: 'no-such-words-here' } }),
-		answers: signedIn(404)
+		// words that open nothing are told apart from nothing else
+		answers: signedIn(422)
 	},
 
 	'GET /accounts': { stage: 'draft', answers: { ...closed, administrator: 200 } },
@@ -190,7 +196,7 @@ export const apiRows: Record<string, Row> = {
 	'PATCH /assignments/{assignment}/dates': {
 		stage: 'draft',
 		call: (s) => ({ params: { assignment: s.assignmentId }, body: later }),
-		answers: instructorOnly()
+		answers: { ...instructorOnly(), administrator: 404 }
 	},
 	'POST /assignments/{assignment}/extensions': {
 		stage: 'draft',
@@ -198,7 +204,48 @@ export const apiRows: Record<string, Row> = {
 			params: { assignment: s.assignmentId },
 			body: { ...later, teamId: s.teamId, reason: 'illness' }
 		}),
-		answers: instructorOnly()
+		answers: { ...instructorOnly(), administrator: 404 }
+	},
+
+	'GET /works/{work}/readings': {
+		stage: 'draft',
+		call: (s) => ({ params: { work: s.workId } }),
+		answers: { ...closed, student: 200, mate: 200, grader: 200, instructor: 200 }
+	},
+	'GET /works/{work}/evaluation': {
+		stage: 'draft',
+		call: (s) => ({ params: { work: s.workId } }),
+		answers: { ...closed, student: 200, mate: 200, grader: 200, instructor: 200 }
+	},
+	'GET /works/{work}/files': {
+		stage: 'draft',
+		call: (s) => ({ params: { work: s.workId } }),
+		answers: { ...closed, student: 200, mate: 200, grader: 200, instructor: 200 }
+	},
+	'PUT /works/{work}/readings/{table}/file': {
+		stage: 'draft',
+		call: (s) => ({
+			params: { work: s.workId, table: 'readings' },
+			query: { name: 'run.csv' },
+			raw: { type: 'text/csv', text: 't,p\n83.02,400.1\n' }
+		}),
+		answers: { ...closed, student: 200, mate: 200, grader: 403, instructor: 403 }
+	},
+	'GET /files/{file}': {
+		stage: 'draft',
+		call: (s) => ({ params: { file: s.file } }),
+		answers: { ...closed, student: 200, mate: 200, grader: 200, instructor: 200 }
+	},
+	// The author's own abstract: not even the team mate's, and a grader sees no draft.
+	'GET /documents/{document}': {
+		stage: 'draft',
+		call: (s) => ({ params: { document: s.abstract } }),
+		answers: { ...closed, student: 200, instructor: 200 }
+	},
+	'GET /documents/{document}/versions': {
+		stage: 'draft',
+		call: (s) => ({ params: { document: s.readings } }),
+		answers: { ...closed, student: 200, mate: 200, grader: 200, instructor: 200 }
 	},
 
 	'PUT /works/{work}/report': {
@@ -234,7 +281,7 @@ export const apiRows: Record<string, Row> = {
 			grader: 200,
 			otherGrader: 200,
 			instructor: 403,
-			administrator: 403
+			administrator: 404
 		}
 	},
 	'GET /sittings/{sitting}': {
@@ -317,8 +364,8 @@ export const apiRows: Record<string, Row> = {
 			student: 403,
 			mate: 403,
 			otherStudent: 403,
-			grader: 201,
-			otherGrader: 201,
+			grader: 200,
+			otherGrader: 200,
 			instructor: 403,
 			administrator: 403
 		}
@@ -347,12 +394,12 @@ export const apiRows: Record<string, Row> = {
 	'POST /returning/{course}': {
 		stage: 'marked',
 		call: (s) => ({ params: { course: s.slug }, body: { reports: [s.report] } }),
-		answers: instructorOnly()
+		answers: ofReport
 	},
 	'POST /returning/{course}/withdrawals': {
 		stage: 'returned',
 		call: (s) => ({ params: { course: s.slug }, body: { reports: [s.report] } }),
-		answers: instructorOnly()
+		answers: ofReport
 	},
 	'GET /courses/{course}/spread': {
 		stage: 'marked',

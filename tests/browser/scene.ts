@@ -4,6 +4,7 @@ import { seedReadings, seedSection } from '../../src/lib/collab';
 import { describeSelection, projectSection, shownResults } from '../../src/lib/reports';
 import type { Viewer } from '../../src/lib/server/auth';
 import { database, schema } from '../../src/lib/server/db';
+import * as files from '../../src/lib/server/files';
 import * as experiments from '../../src/lib/server/experiments';
 import * as marking from '../../src/lib/server/marking';
 import * as moderation from '../../src/lib/server/moderation';
@@ -54,12 +55,22 @@ export async function makeScene(stage: Stage): Promise<Scene & { administrator: 
 		{ viewer: grader },
 		{ courseId: course.id, kind: 'note', body: 'Name the source.' }
 	);
+	const { id: file } = await files.keepFile(
+		{ viewer: student },
+		{
+			subject: { kind: 'work', id: course.workId },
+			name: 'run.csv',
+			bytes: Buffer.from('t,p\n82.91,400.2\n'),
+			mediaType: 'text/csv'
+		}
+	);
 	const scene = {
 		...course,
 		administrator,
 		report: report.id,
 		alias: report.alias,
 		readings: report.readings.document,
+		abstract: report.sections.find(({ key }) => key === 'abstract')?.document ?? '',
 		results,
 		engine: engineVersion,
 		criterion,
@@ -69,7 +80,7 @@ export async function makeScene(stage: Stage): Promise<Scene & { administrator: 
 		revision: 0,
 		remark: '',
 		sitting: '',
-		file: ''
+		file
 	};
 	if (stage === 'draft') return scene;
 

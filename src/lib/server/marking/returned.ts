@@ -1,7 +1,7 @@
 import { and, asc, desc, eq, inArray, sql } from 'drizzle-orm';
 import type { RemarkShape, ReplyShape } from '$lib/contracts/marking';
 import type { Evaluation } from '$lib/worksheets';
-import { allowed, type Viewer } from '../auth';
+import { allowed, authorise, type Viewer } from '../auth';
 import { database, schema, type Database } from '../db';
 import { notFound } from '../errors';
 import * as reports from '../reports';
@@ -137,7 +137,12 @@ export async function returned(viewer: Viewer, workId: string): Promise<Returned
 				allowed('report.see', viewer.id, sql`${reportTable.id}`)
 			)
 		);
-	if (!own?.countedSnapshotId) return { state: 'draft', report: null };
+	if (!own) {
+		// Not begun: only whoever may write one here is told so.
+		await authorise(db, viewer, 'work.write', workId);
+		return { state: 'draft', report: null };
+	}
+	if (!own.countedSnapshotId) return { state: 'draft', report: null };
 	if (own.back) return { state: 'returned', report: await readReturned(db, viewer, own.id, own.title) };
 	const [snapshot] = await db
 		.select()

@@ -16,9 +16,20 @@ export function scrollStop(label: string): Attachment<HTMLElement> {
 				for (const name of ['tabindex', 'role', 'aria-label']) box.removeAttribute(name);
 			}
 		};
-		const observer = new ResizeObserver(look);
-		observer.observe(box);
-		for (const child of box.children) observer.observe(child);
-		return () => observer.disconnect();
+		return watchSize(box, look);
 	};
+}
+
+/** The same for a landmark that moves up and down: it keeps its role and name. */
+export const tallStop: Attachment<HTMLElement> = (box) =>
+	watchSize(box, () => {
+		if (box.scrollHeight > box.clientHeight + 1) box.tabIndex = 0;
+		else box.removeAttribute('tabindex');
+	});
+
+function watchSize(box: HTMLElement, look: () => void): () => void {
+	const observer = new ResizeObserver(look);
+	observer.observe(box);
+	for (const child of box.children) observer.observe(child);
+	return () => observer.disconnect();
 }

@@ -12,9 +12,13 @@ export function counted(count: number, one: string, many = `${one}s`): string {
 	return `${number(count)} ${count === 1 ? one : many}`;
 }
 
-/** "14:32", by this device's clock. */
-export function clock(at: Date): string {
-	return at.toLocaleTimeString('en-GB', { hour: '2-digit', minute: '2-digit' });
+/** "14:32" in the course's zone; by this device's clock where none is named. */
+export function clock(at: Date, zone?: string): string {
+	return at.toLocaleTimeString('en-GB', {
+		hour: '2-digit',
+		minute: '2-digit',
+		...(zone && { timeZone: zone })
+	});
 }
 
 export interface Status {
@@ -28,7 +32,8 @@ export function statusOf(
 	here: number,
 	cameBack: number,
 	closed: 'frozen' | 'sealed' | null,
-	word = 'reading'
+	word = 'reading',
+	zone?: string
 ): Status {
 	switch (live.state) {
 		case 'connecting':
@@ -38,7 +43,7 @@ export function statusOf(
 				const all = cameBack === 1 ? `The ${word} is stored` : `All ${counted(cameBack, word)} stored`;
 				return { text: `Online again. ${all}.`, state: 'kept' };
 			}
-			return { text: live.storedAt ? `Stored ${clock(live.storedAt)}.` : 'Stored.', state: 'kept' };
+			return { text: live.storedAt ? `Stored ${clock(live.storedAt, zone)}.` : 'Stored.', state: 'kept' };
 		case 'storing':
 			return { text: 'Storing…', state: 'sending' };
 		case 'offline':

@@ -29,6 +29,8 @@ export interface ReadingsSheetOptions {
 	readings: Readings;
 	document: { id: string; epoch: number; canWrite: boolean; closed: 'frozen' | 'sealed' | null };
 	person: Person;
+	/** the course's, for times of day */
+	zone: string;
 }
 
 export interface Place {
@@ -92,7 +94,14 @@ export class ReadingsSheet {
 
 	readonly status = $derived.by(() =>
 		this.live
-			? statusOf(this.live, this.#here, this.#cameBack, this.#options.document.closed)
+			? statusOf(
+					this.live,
+					this.#here,
+					this.#cameBack,
+					this.#options.document.closed,
+					'reading',
+					this.#options.zone
+				)
 			: statusOf({ state: 'connecting', refusal: null, storedAt: null }, 0, 0, null)
 	);
 

@@ -1,5 +1,5 @@
 import { eq } from 'drizzle-orm';
-import type { Runner } from 'graphile-worker';
+import type { Jobs } from '../../src/lib/server/jobs';
 import { afterAll, beforeAll, expect, test } from 'vitest';
 import * as accounts from '../../src/lib/server/accounts';
 import { hashPassword, readSession, sessionHolds } from '../../src/lib/server/auth';
@@ -10,7 +10,7 @@ import { act, makeCourse, makePerson, type MadeCourse } from '../factories';
 import { caughtMail, freshDatabase, type FreshDatabase } from '../harness';
 
 let fresh: FreshDatabase;
-let runner: Runner;
+let runner: Jobs;
 let course: MadeCourse;
 const password = 'copper rowan tide ladder';
 const from = (address: string) => ({ address, client: 'a browser' });

@@ -1,6 +1,6 @@
 import { createServer, type Server } from 'node:net';
 import { eq } from 'drizzle-orm';
-import type { Runner } from 'graphile-worker';
+import type { Jobs } from '../../src/lib/server/jobs';
 import { v7 as uuidv7 } from 'uuid';
 import { afterAll, afterEach, beforeAll, expect, test } from 'vitest';
 import { closeDatabase, connection, database, schema } from '../../src/lib/server/db';
@@ -11,7 +11,7 @@ import { until } from '../account-requests';
 import { caughtMail, freshDatabase, type FreshDatabase } from '../harness';
 
 let fresh: FreshDatabase;
-const running: Runner[] = [];
+const running: Jobs[] = [];
 const work = async () => running.push(await startJobs());
 
 const said = (recipient: string, subject = uuidv7()) =>

@@ -1,1 +1,1 @@
-export { start, type Tasks } from './start';
+export { start, type Jobs, type Tasks } from './start';

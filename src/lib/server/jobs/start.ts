@@ -15,23 +15,56 @@ const quiet = new Logger(() => (level, message) => {
 	else log.debug(message);
 });
 
+/** Pauses before the queue is taken up again after the database went away, ms; the last one repeats. */
+const pauses = [500, 1_000, 2_000, 5_000];
+
+/** The queue being worked through; it outlives the database's absence. */
+export interface Jobs {
+	stop(): Promise<void>;
+}
+
 /**
  * Works through the queue in this process until stopped. Any number of processes may do so. The queue's tables must be
- * there: the migrations make them.
+ * there: the migrations make them. A runner that gives up because the database was lost is followed by another one:
+ * the process goes on serving meanwhile.
  * @param tasks one for each name in the queue
  * @param everyMinute names of tasks that also run by the clock, once for all processes
  */
-export async function start(tasks: Tasks, everyMinute: string[] = []): Promise<Runner> {
+export async function start(tasks: Tasks, everyMinute: string[] = []): Promise<Jobs> {
 	const taskList: TaskList = Object.fromEntries(
 		Object.entries(tasks).map(([name, task]) => [name, (payload: unknown) => task(payload)])
 	);
-	return run({
-		connectionString: env().DATABASE_URL,
-		taskList,
-		concurrency,
-		maxPoolSize: concurrency + 2,
-		noHandleSignals: true,
-		logger: quiet,
-		crontab: everyMinute.map((name) => `* * * * * ${name} ?max=3`).join('\n')
-	});
+	let stopped = false;
+	let runner: Runner | null = null;
+	let tries = 0;
+	const begin = async () => {
+		const begun = await run({
+			connectionString: env().DATABASE_URL,
+			taskList,
+			concurrency,
+			maxPoolSize: concurrency + 2,
+			noHandleSignals: true,
+			logger: quiet,
+			crontab: everyMinute.map((name) => `* * * * * ${name} ?max=3`).join('\n')
+		});
+		runner = begun;
+		tries = 0;
+		begun.promise.catch((thrown: unknown) => again(thrown));
+	};
+	const again = (thrown: unknown) => {
+		runner = null;
+		if (stopped) return;
+		log.warn({ err: thrown }, 'the queue stopped; it is taken up again');
+		const pause = pauses[Math.min(tries++, pauses.length - 1)] ?? 0;
+		setTimeout(() => {
+			if (!stopped) begin().catch(again);
+		}, pause).unref();
+	};
+	await begin();
+	return {
+		async stop() {
+			stopped = true;
+			await runner?.stop();
+		}
+	};
 }

@@ -13,6 +13,9 @@ const grants = new URL('../src/lib/server/db/grants.ts', import.meta.url).pathna
 
 /** Any number: test files that run at once agree on who makes the template. */
 const templateLock = 4_310_002;
+/** An autovacuum worker may be at work in the database: it is the superuser's, and leaves by itself. */
+const notOurs = '42501';
+const dropTries = 60;
 
 export interface FreshDatabase {
 	name: string;
@@ -85,7 +88,16 @@ export async function freshDatabase(): Promise<FreshDatabase> {
 		async drop() {
 			const again = postgres(ownerUrl, { max: 1, onnotice: () => undefined });
 			try {
-				await again`drop database if exists ${again(name)} with (force)`;
+				for (let left = dropTries; ; left--) {
+					try {
+						await again`drop database if exists ${again(name)} with (force)`;
+						return;
+					} catch (problem) {
+						if (left === 0 || !(problem instanceof postgres.PostgresError) || problem.code !== notOurs)
+							throw problem;
+						await new Promise((resolve) => setTimeout(resolve, 250));
+					}
+				}
 			} finally {
 				await again.end();
 			}

@@ -79,6 +79,9 @@ test.each([
 	['https://elsewhere.example', '/now'],
 	['javascript:alert(1)', '/now'],
 	['/\t/elsewhere.example', '/now'],
+	['/.//elsewhere.example', '/now'],
+	['/c/../..//elsewhere.example', '/now'],
+	['/.\\/elsewhere.example', '/now'],
 	[null, '/now']
 ])('after signing in, %s leads to %s', (next, path) =>
 	expect(localPathOf('https://meniscus.example.edu', next)).toBe(path)

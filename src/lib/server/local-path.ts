@@ -2,5 +2,8 @@
 export function localPathOf(origin: string, next: string | null | undefined): string {
 	if (!next?.startsWith('/') || !URL.canParse(next, origin)) return '/now';
 	const url = new URL(next, origin);
-	return url.origin === origin ? url.pathname + url.search + url.hash : '/now';
+	// '/.//elsewhere' is an address of ours whose path, sent alone, names another host.
+	return url.origin === origin && !url.pathname.startsWith('//')
+		? url.pathname + url.search + url.hash
+		: '/now';
 }

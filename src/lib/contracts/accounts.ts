@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { slug } from './courses';
 import { operation } from './operation';
-import { instant, uuid } from './shapes';
+import { instant, line, uuid } from './shapes';
 
 /** Trimmed and in lower case, so that one address is one account. */
 export const email = z
@@ -10,11 +10,7 @@ export const email = z
 	.toLowerCase()
 	.max(254, 'Longer than an e-mail address can be.')
 	.pipe(z.email('This is not an e-mail address: name@place.example.'));
-export const personName = z
-	.string()
-	.trim()
-	.min(1, 'Type the name others will read.')
-	.max(120, 'At most 120 characters.');
+export const personName = line.min(1, 'Type the name others will read.').max(120, 'At most 120 characters.');
 export const initials = z
 	.string()
 	.trim()

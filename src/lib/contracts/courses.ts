@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { operation } from './operation';
-import { instant, page, pageQuery, uuid, wallClock } from './shapes';
+import { instant, line, page, pageQuery, uuid, wallClock } from './shapes';
 
 export const slug = z.string().regex(/^[a-z0-9][a-z0-9-]{0,62}$/);
 const courseParams = z.object({ course: slug });
@@ -126,7 +126,7 @@ export const addTeam = operation({
 	summary: 'Adds a team to a lab section',
 	access: 'signed-in',
 	params: courseParams,
-	body: z.object({ labSectionId: uuid, name: z.string().trim().min(1).max(60) }),
+	body: z.object({ labSectionId: uuid, name: line.min(1).max(60) }),
 	response: z.object({ id: uuid }),
 	status: 201,
 	repeatable: true
@@ -140,10 +140,10 @@ export const addCourse = operation({
 	access: 'signed-in',
 	body: z.object({
 		slug: slug.describe('Stands in addresses'),
-		code: z.string().trim().min(1, 'Type the code people call it by.').max(40),
-		title: z.string().trim().min(1, 'Type the title.').max(160),
-		institution: z.string().trim().min(1, 'Type the institution.').max(160),
-		zone: z.string().trim().min(1).max(80)
+		code: line.min(1, 'Type the code people call it by.').max(40),
+		title: line.min(1, 'Type the title.').max(160),
+		institution: line.min(1, 'Type the institution.').max(160),
+		zone: line.min(1).max(80)
 	}),
 	response: z.object({ id: uuid, slug }),
 	status: 201,
@@ -158,8 +158,8 @@ export const addLabSection = operation({
 	access: 'signed-in',
 	params: courseParams,
 	body: z.object({
-		name: z.string().trim().min(1, 'Type a name.').max(60),
-		meets: z.string().trim().min(1, 'Say when it meets.').max(120)
+		name: line.min(1, 'Type a name.').max(60),
+		meets: line.min(1, 'Say when it meets.').max(120)
 	}),
 	response: z.object({ id: uuid }),
 	status: 201,

@@ -34,7 +34,7 @@ const anchor = z.object({
 	/** names behind the links inside the quoted words, in order */
 	links: z.array(z.string().max(200)).max(500),
 	/** version of the plain-text projection the positions count in */
-	projection: z.number().int().min(1)
+	projection: z.number().int().min(1).max(1000)
 });
 
 const remark = z.object({

@@ -5,6 +5,7 @@ import type { Act, Viewer } from './auth';
 import { requestDigest } from './db';
 import { Refusal, type RefusalKind } from './errors';
 import { logger } from './logger';
+import { mustBeStorable } from './storable';
 
 /** The only place that turns refusals into HTTP. */
 const statuses: Record<RefusalKind, { status: number; title: string }> = {
@@ -61,6 +62,7 @@ export function problemOf(
 
 function parse<S extends z.ZodType>(schema: S | undefined, value: unknown, where: string): z.output<S> {
 	if (!schema) return undefined as z.output<S>;
+	mustBeStorable(value, where);
 	const result = schema.safeParse(value);
 	if (result.success) return result.data;
 	const fields: Record<string, string> = {};

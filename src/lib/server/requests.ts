@@ -4,7 +4,7 @@ import { apiBase, operationAt } from '$lib/contracts/routes';
 import type { Visitor } from './accounts';
 import { blankCookie, sessionSecret } from './auth';
 import { env } from './env';
-import { Refusal } from './errors';
+import { notFound, Refusal } from './errors';
 import { localPathOf } from './local-path';
 
 /** Largest JSON body, bytes: a report's text or a table of 2,000 rows with its results is well below. */
@@ -25,6 +25,8 @@ export const isApi = (event: Pick<RequestEvent, 'url'>): boolean =>
  */
 export function mustBeOurs(event: RequestEvent): void {
 	const { request } = event;
+	// No address of ours has U+0000 in it; as a parameter it would only come back from the database as a fault.
+	if (!isApi(event) && /%00/.test(event.url.pathname + event.url.search)) throw notFound();
 	if (reads.has(request.method)) return;
 	const type = (request.headers.get('content-type') ?? '').split(';')[0]?.trim().toLowerCase() ?? '';
 	if (!isApi(event)) return mustFit(request, formLimit);

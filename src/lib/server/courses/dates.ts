@@ -1,11 +1,11 @@
-import { eq } from 'drizzle-orm';
+import { and, eq, isNull } from 'drizzle-orm';
 import { v7 as uuidv7 } from 'uuid';
 import * as audit from '../audit';
 import { authorise, type Act } from '../auth';
 import { schema, transact, type Transaction } from '../db';
 import { notFound, unprocessable } from '../errors';
 
-const { assignments, extensions } = schema;
+const { assignments, extensions, members, teams } = schema;
 
 export interface Dates {
 	/** 'YYYY-MM-DDTHH:MM' in the course's zone */
@@ -56,6 +56,33 @@ export async function changeDates(act: Act, input: Dates & { assignment: string 
 	});
 }
 
+/** Errors: Refusal 'unprocessable' for a person who is no student of the course, or a team of another. */
+async function mustBeOfCourse(
+	tx: Transaction,
+	courseId: string,
+	{ userId, teamId }: { userId?: string | undefined; teamId?: string | undefined }
+): Promise<void> {
+	const [found] = userId
+		? await tx
+				.select({ id: members.userId })
+				.from(members)
+				.where(
+					and(
+						eq(members.courseId, courseId),
+						eq(members.userId, userId),
+						eq(members.role, 'student'),
+						isNull(members.leftAt)
+					)
+				)
+		: await tx
+				.select({ id: teams.id })
+				.from(teams)
+				.where(and(eq(teams.courseId, courseId), eq(teams.id, teamId ?? '')));
+	if (found) return;
+	const problem = `This ${userId ? 'person is no student' : 'team is not'} of this course. Choose one that is.`;
+	throw unprocessable(problem, { [userId ? 'userId' : 'teamId']: problem });
+}
+
 /** Gives one person or one team more time; a later grant to the same replaces the earlier one. */
 export async function grantExtension(
 	act: Act,
@@ -73,6 +100,7 @@ export async function grantExtension(
 	return transact(act.repeatable, async (tx) => {
 		const assignment = await lockAssignment(tx, input.assignment);
 		await authorise(tx, act.viewer, 'assignment.change', assignment.id);
+		await mustBeOfCourse(tx, assignment.courseId, input);
 		const values = {
 			dueLocal: stored(input.dueLocal),
 			closesLocal: stored(input.closesLocal),

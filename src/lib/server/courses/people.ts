@@ -1,7 +1,9 @@
 import { sql } from 'drizzle-orm';
+import { z } from 'zod';
 import { authorise, type Viewer } from '../auth';
 import { database } from '../db';
 import { unprocessable } from '../errors';
+import { mustBeStorable } from '../storable';
 
 export interface Person {
 	userId: string;
@@ -13,6 +15,8 @@ export interface Person {
 	joinedAt: string;
 }
 
+const cursor = z.tuple([z.string(), z.guid(), z.enum(['student', 'grader', 'instructor'])]);
+
 interface Cursor {
 	name: string;
 	userId: string;
@@ -22,8 +26,8 @@ interface Cursor {
 function readCursor(after: string | undefined): Cursor | null {
 	if (!after) return null;
 	try {
-		const [name, userId, role] = JSON.parse(Buffer.from(after, 'base64url').toString('utf8')) as string[];
-		if (name === undefined || userId === undefined || role === undefined) throw new Error('short');
+		const [name, userId, role] = cursor.parse(JSON.parse(Buffer.from(after, 'base64url').toString('utf8')));
+		mustBeStorable(name, 'after');
 		return { name, userId, role };
 	} catch {
 		throw unprocessable('This cursor is not one of ours. Start from the first page.', {
@@ -40,7 +44,7 @@ export async function people(
 ): Promise<{ items: Person[]; next: string | null }> {
 	const db = database();
 	await authorise(db, viewer, 'course.invite', courseId);
-	const cursor = readCursor(page.after);
+	const from = readCursor(page.after);
 	const rows = await db.execute<{
 		user_id: string;
 		name: string;
@@ -56,7 +60,7 @@ export async function people(
 		from members m join users u on u.id = m.user_id left join lab_sections ls on ls.id = m.lab_section_id
 		where m.course_id = ${courseId} and m.left_at is null
 			${page.role ? sql`and m.role = ${page.role}` : sql``}
-			${cursor ? sql`and (u.name, u.id, m.role) > (${cursor.name}, ${cursor.userId}::uuid, ${cursor.role})` : sql``}
+			${from ? sql`and (u.name, u.id, m.role) > (${from.name}, ${from.userId}::uuid, ${from.role})` : sql``}
 		order by u.name, u.id, m.role
 		limit ${page.limit + 1}`);
 	const items = rows.slice(0, page.limit).map((row) => ({

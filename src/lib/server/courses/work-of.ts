@@ -1,4 +1,5 @@
 import { and, eq, sql } from 'drizzle-orm';
+import { validate as isUuid } from 'uuid';
 import { allowed, type Viewer } from '../auth';
 import { database, schema } from '../db';
 import { notFound } from '../errors';
@@ -17,6 +18,8 @@ export interface WorkHead {
 
 /** A team's work, for those who may see it. Errors: Refusal 'not-found'. */
 export async function workOf(viewer: Viewer, workId: string): Promise<WorkHead> {
+	// Comes from a page's address, where anything may stand.
+	if (!isUuid(workId)) throw notFound();
 	const db = database();
 	const [row] = await db
 		.select({ work, assignment: assignments, team: teams, course: courses })

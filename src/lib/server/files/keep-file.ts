@@ -33,7 +33,10 @@ export function plainName(name: string): string {
 	const plain = last
 		.replace(/[\p{Cc}\p{Cf}]/gu, '')
 		.trim()
-		.slice(-150);
+		.slice(-150)
+		// Cut in the middle of a pair, its second half is no character.
+		.replace(/^[\uDC00-\uDFFF]/, '')
+		.toWellFormed();
 	return plain === '' || /^\.+$/.test(plain) ? 'readings.csv' : plain;
 }
 

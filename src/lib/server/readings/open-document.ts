@@ -1,7 +1,7 @@
 import { and, desc, eq, lt } from 'drizzle-orm';
 import type { Viewer } from '../auth';
 import { database, schema } from '../db';
-import { notFound } from '../errors';
+import { notFound, unprocessable } from '../errors';
 import { documentAccess } from './document-log';
 
 const { documents, documentVersions, users } = schema;
@@ -44,6 +44,13 @@ export interface ListedVersion {
 	at: Date;
 }
 
+function readCursor(after: string): number {
+	if (/^\d{1,15}$/.test(after)) return Number(after);
+	throw unprocessable('This cursor is not one of ours. Start from the first page.', {
+		after: 'not a cursor'
+	});
+}
+
 /** Kept versions, newest first, a page at a time. Errors: Refusal 'not-found'. */
 export async function versionsOf(
 	viewer: Viewer,
@@ -52,7 +59,7 @@ export async function versionsOf(
 ): Promise<{ items: ListedVersion[]; next: string | null }> {
 	const db = database();
 	if (!(await documentAccess(db, viewer.id, documentId))) throw notFound();
-	const before = page.after === undefined ? undefined : Number(page.after);
+	const before = page.after === undefined ? undefined : readCursor(page.after);
 	const rows = await db
 		.select({
 			seq: documentVersions.seq,
@@ -65,7 +72,7 @@ export async function versionsOf(
 		.where(
 			and(
 				eq(documentVersions.documentId, documentId),
-				before !== undefined && Number.isSafeInteger(before) ? lt(documentVersions.seq, before) : undefined
+				before === undefined ? undefined : lt(documentVersions.seq, before)
 			)
 		)
 		.orderBy(desc(documentVersions.seq))

@@ -1,12 +1,14 @@
 import { sql } from 'drizzle-orm';
 import type { Database, Transaction } from '../db';
+import { storableText } from '../storable';
 
 /** Keeps the text as it stands at `seq`. Repeating it for the same moment changes nothing; false when the text is the last one kept. */
 export async function storeVersion(
 	db: Database | Transaction,
 	version: { documentId: string; seq: number; text: string; byId: string | null }
 ): Promise<boolean> {
-	const { documentId, seq, text, byId } = version;
+	const { documentId, seq, byId } = version;
+	const text = storableText(version.text);
 	const rows = await db.execute(sql`
 		insert into document_versions (document_id, seq, text, by_id)
 		select ${documentId}::uuid, ${seq}::bigint, ${text}::text, ${byId}::uuid

@@ -186,6 +186,15 @@ test('an address of a page that holds U+0000 is not here', async () => {
 	expect(response.status).toBe(404);
 });
 
+test.each([
+	['larger than names and passwords', { 'content-length': '20000' }, 413],
+	['in pieces that tell no length', { 'content-length': '', 'transfer-encoding': 'chunked' }, 422]
+])('a form %s is not read', async (_, headers, status) => {
+	const form = { 'content-type': 'application/x-www-form-urlencoded', ...headers };
+	const sent = { method: 'POST', route: '/sign-in', body: 'email=x', headers: form };
+	expect((await send(() => new Response('read'), sent)).status).toBe(status);
+});
+
 test('a version of a text keeps the text, whatever was typed into it', async () => {
 	const { document } = await readings.openBench(course.student, course.workId);
 	const version = { documentId: document.id, seq: 1, byId: course.student.id };

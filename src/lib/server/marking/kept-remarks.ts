@@ -74,6 +74,13 @@ export async function useKeptRemark(act: Act, input: { kept: string }): Promise<
 			.update(keptRemarks)
 			.set({ uses: sql`${keptRemarks.uses} + 1` })
 			.where(eq(keptRemarks.id, kept.id));
+		await audit.record(tx, {
+			actorId: act.viewer.id,
+			courseId: kept.courseId,
+			action: 'remark.use',
+			subjectKind: 'keptRemark',
+			subjectId: kept.id
+		});
 		return present({ ...kept, uses: kept.uses + 1 });
 	});
 }

@@ -1,8 +1,9 @@
+import { sql } from 'drizzle-orm';
 import postgres from 'postgres';
 import { v7 as uuidv7 } from 'uuid';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import type { Viewer } from '../../src/lib/server/auth';
-import { closeDatabase } from '../../src/lib/server/db';
+import { closeDatabase, database } from '../../src/lib/server/db';
 import { Refusal } from '../../src/lib/server/errors';
 import * as marking from '../../src/lib/server/marking';
 import { act } from '../factories';
@@ -426,6 +427,10 @@ describe('remarks', () => {
 		expect(await marking.listKeptRemarks(course.grader, course.id)).toEqual([
 			{ id: kept.id, kind: 'question', body: 'Name the source.', uses: 1 }
 		]);
+		const recorded = await database().execute<{ action: string }>(
+			sql`select action from audit where subject_id = ${kept.id} order by id`
+		);
+		expect(recorded.map(({ action }) => action)).toEqual(['remark.keep', 'remark.keep', 'remark.use']);
 		expect((await refusalOf(marking.useKeptRemark(act(course.colleague), { kept: kept.id }))).kind).toBe(
 			'not-found'
 		);

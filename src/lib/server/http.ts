@@ -2,10 +2,9 @@ import { error, fail, json, type RequestEvent, type RequestHandler } from '@svel
 import { z } from 'zod';
 import type { Operation, ProblemDetails } from '$lib/contracts';
 import type { Act, Viewer } from './auth';
-import { requestDigest } from './db';
+import { mustBeStorable, requestDigest } from './db';
 import { Refusal, type RefusalKind } from './errors';
 import { logger } from './logger';
-import { mustBeStorable } from './storable';
 
 /** The only place that turns refusals into HTTP. */
 const statuses: Record<RefusalKind, { status: number; title: string }> = {

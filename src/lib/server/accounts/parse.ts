@@ -1,6 +1,6 @@
 import type { z } from 'zod';
 import { unprocessable } from '../errors';
-import { mustBeStorable } from '../storable';
+import { mustBeStorable } from '../db';
 
 /** Input as its schema reads it; throws Refusal 'unprocessable' with one sentence for each field that does not hold. */
 export function parse<S extends z.ZodType>(schema: S, input: unknown): z.output<S> {

@@ -1,9 +1,8 @@
 import { sql } from 'drizzle-orm';
 import { z } from 'zod';
 import { authorise, type Viewer } from '../auth';
-import { database } from '../db';
+import { database, mustBeStorable } from '../db';
 import { unprocessable } from '../errors';
-import { mustBeStorable } from '../storable';
 
 export interface Person {
 	userId: string;

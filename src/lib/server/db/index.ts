@@ -8,4 +8,5 @@ export {
 	type Transaction
 } from './client';
 export { requestDigest, transact, type Repeatable } from './transact';
+export { mustBeStorable, storableText } from './storable';
 export * as schema from './schema';

@@ -1,6 +1,5 @@
 import { sql } from 'drizzle-orm';
-import type { Database, Transaction } from '../db';
-import { storableText } from '../storable';
+import { storableText, type Database, type Transaction } from '../db';
 
 /** Keeps the text as it stands at `seq`. Repeating it for the same moment changes nothing; false when the text is the last one kept. */
 export async function storeVersion(

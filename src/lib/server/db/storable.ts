@@ -1,4 +1,4 @@
-import { unprocessable } from './errors';
+import { unprocessable } from '../errors';
 
 /** U+0000, which PostgreSQL takes neither in text nor in JSON, or half of a surrogate pair, which is no character. */
 const unstorable = (text: string): boolean => text.includes('\0') || !text.isWellFormed();

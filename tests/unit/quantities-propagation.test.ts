@@ -8,6 +8,7 @@ import {
 	covariance,
 	coverageFactor,
 	divide,
+	elementary,
 	exactly,
 	exp,
 	exponential,
@@ -206,5 +207,26 @@ describe('elementary functions', () => {
 			}),
 			{ numRuns: 2000, seed }
 		);
+	});
+
+	it.each<[string, (x: number) => number, (x: number) => number, number, number]>([
+		['log10', elementary.log10, Math.log10, 1e-300, 1e300],
+		['sin', elementary.sin, Math.sin, -50, 50],
+		['cos', elementary.cos, Math.cos, -50, 50],
+		['tan', elementary.tan, Math.tan, -50, 50],
+		['asin', elementary.asin, Math.asin, -1, 1],
+		['acos', elementary.acos, Math.acos, -1, 1],
+		['atan', elementary.atan, Math.atan, -1e6, 1e6]
+	])('%s too', (_, ours, engine, min, max) => {
+		fc.assert(
+			fc.property(fc.double({ min, max, noNaN: true }), (x) => {
+				expect(Math.abs(ours(x) - engine(x))).toBeLessThanOrEqual(4.5e-16 * Math.abs(engine(x)));
+			}),
+			{ numRuns: 2000, seed }
+		);
+	});
+
+	it('gives whole numbers as the logarithms of the powers of ten', () => {
+		for (let n = -300; n <= 300; n += 1) expect(elementary.log10(Number(`1e${n}`))).toBe(n);
 	});
 });

@@ -1,3 +1,4 @@
+export * as elementary from './elementary';
 export { exp as exponential, ln as naturalLogarithm, pow } from './elementary';
 export {
 	dimensionless,

@@ -1,3 +1,10 @@
-export { fitLine, lineAt, type FitPolicy, type FitWeights, type LineFit, type LineOptions } from './line';
+export { fitLine, lineAt, type LineFit, type LineOptions } from './line';
 export { inversePrediction } from './inverse';
+export { fitLinear } from './linear';
+export { fitPolynomial } from './polynomial';
+export { fitNonlinear } from './nonlinear';
+export type { Model } from './model-problem';
+export type { FitOptions, FitPolicy, FitWeights, ModelFit } from './model-fit';
+export * as dual from './dual';
+export type { Dual } from './dual';
 export { FitProblem, type FitProblemCode } from './problems';

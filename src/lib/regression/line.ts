@@ -10,25 +10,14 @@ import {
 	type Uncertainty
 } from '$lib/quantities';
 import { compensatedSum } from '$lib/statistics';
+import { leastSquares, noSpread, readingVariances, weightedLine, type Sums, type Through } from './line-sums';
+import type { FitOptions, FitPolicy } from './model-fit';
 import { FitProblem } from './problems';
+import { chiSquaredOf } from './stated';
 
-/**
- * 'scatter': what the readings' own (reading-scope) uncertainty says is replaced by the residual scatter with n - 2
- * degrees of freedom. 'stated': it is kept and chi-squared tells whether it was believable. Which one is decided
- * beforehand: the larger of the two after seeing the data has the wrong coverage. Shared deviations always propagate.
- */
-export type FitPolicy = 'scatter' | 'stated';
-
-/** 'stated': weights 1/u2 of the residual from the reading-scope parts of both axes (effective variance). */
-export type FitWeights = 'equal' | 'stated';
-
-export interface LineOptions {
-	/** makes the scatter's component unique, e.g. the fit's name */
-	id: string;
-	/** how a budget names the scatter about the line */
-	scatterLabel: string;
-	policy: FitPolicy;
-	weights: FitWeights;
+export interface LineOptions extends FitOptions {
+	/** 'origin': y = slope * x, with one parameter; the intercept is exactly zero */
+	through?: Through;
 }
 
 export interface LineFit {
@@ -44,22 +33,14 @@ export interface LineFit {
 	readonly spreadX: number;
 	/** y - line at each point, SI, in the order of the points */
 	readonly residuals: readonly number[];
-	/** of unit weight, in the unit of y when weights are equal; null when n = 2 */
+	/** how far each point pulls the line to itself, 0 to 1; their sum is the number of parameters */
+	readonly leverage: readonly number[];
+	/** of slope and intercept by the fit's policy alone (scatter, or stated reading-scope parts), SI */
+	readonly covariance: number;
+	/** of unit weight, in the unit of y when weights are equal; null when no degree of freedom is left */
 	readonly residualStandardDeviation: number | null;
 	/** against the stated reading-scope uncertainty; null when some point states none */
 	readonly chiSquared: number | null;
-}
-
-interface Sums {
-	w: readonly number[];
-	total: number;
-	centreX: number;
-	centreY: number;
-	dx: readonly number[];
-	dy: readonly number[];
-	xx: number;
-	slope: number;
-	residuals: readonly number[];
 }
 
 /**
@@ -71,10 +52,11 @@ interface Sums {
 export function fitLine(x: readonly Quantity[], y: readonly Quantity[], options: LineOptions): LineFit {
 	const xs = x.map((quantity) => quantity.value);
 	const ys = y.map((quantity) => quantity.value);
-	requireEnough(xs, options.policy);
-	const equal = leastSquares(xs, ys, xs.map(() => 1)); // prettier-ignore
-	const sums = options.weights === 'stated' ? weighted(x, y, xs, ys, equal) : equal;
-	const degreesOfFreedom = xs.length - 2;
+	const through = options.through ?? 'free';
+	requireEnough(xs, options.policy, through);
+	const equal = leastSquares(xs, ys, xs.map(() => 1), through); // prettier-ignore
+	const sums = options.weights === 'stated' ? weightedLine(x, y, xs, ys, equal, through) : equal;
+	const degreesOfFreedom = xs.length - (through === 'origin' ? 1 : 2);
 	const scatter = compensatedSum(sums.residuals.map((r, i) => (sums.w[i] ?? 0) * r * r));
 	const deviation = degreesOfFreedom > 0 ? Math.sqrt(scatter / degreesOfFreedom) : null;
 
@@ -110,6 +92,7 @@ export function fitLine(x: readonly Quantity[], y: readonly Quantity[], options:
 			addPart(centreParts, source, -sums.slope * height * part);
 		}
 	});
+	const scattered: Source[] = [];
 	if (options.policy === 'scatter' && deviation !== null && deviation > 0) {
 		const component: Component = {
 			id: `${options.id}:scatter`,
@@ -118,35 +101,37 @@ export function fitLine(x: readonly Quantity[], y: readonly Quantity[], options:
 			degreesOfFreedom
 		};
 		// height at the centre and slope are independent; both rest on one variance estimate, hence one component
-		addPart(centreParts, { component }, deviation / Math.sqrt(sums.total));
-		addPart(slopeParts, { component }, deviation / Math.sqrt(sums.xx));
+		scattered.push({ component }, { component });
+		addPart(centreParts, scattered[0] ?? { component }, deviation / Math.sqrt(sums.total));
+		addPart(slopeParts, scattered[1] ?? { component }, deviation / Math.sqrt(sums.xx));
 	}
-	return assemble(x, y, sums, slopeParts, centreParts, { ...options, degreesOfFreedom, deviation });
+	return {
+		points: xs.length,
+		degreesOfFreedom,
+		policy: options.policy,
+		...told(x, y, sums, slopeParts, centreParts),
+		centreX: sums.centreX,
+		spreadX: sums.xx,
+		residuals: sums.residuals,
+		leverage: sums.dx.map((d, i) => (sums.w[i] ?? 0) * (1 / sums.total + (d * d) / sums.xx)),
+		covariance: ownCovariance(slopeParts, centreParts, sums.centreX, options.policy, new Set(scattered)),
+		residualStandardDeviation: deviation,
+		chiSquared: chiSquaredOf(sums.residuals, readingVariances(x, y, sums.slope))
+	};
 }
 
-function assemble(
+/** Slope, height at the centre and intercept as quantities. */
+function told(
 	x: readonly Quantity[],
 	y: readonly Quantity[],
 	sums: Sums,
 	slopeParts: Map<Source, number>,
-	centreParts: Map<Source, number>,
-	{
-		policy,
-		degreesOfFreedom,
-		deviation
-	}: LineOptions & { degreesOfFreedom: number; deviation: number | null }
-): LineFit {
+	centreParts: Map<Source, number>
+): Pick<LineFit, 'slope' | 'centre' | 'intercept'> {
 	const firstX = x[0];
 	const firstY = y[0];
 	if (!firstX || !firstY) throw new FitProblem('too-few-points', 'No points, so there is no line.');
 	const slopeUnit = divideUnits(firstY.unit, firstX.unit);
-	const slope: Quantity = {
-		value: sums.slope,
-		dimension: slopeUnit.dimension,
-		unit: slopeUnit,
-		point: false,
-		parts: slopeParts
-	};
 	const centre: Quantity = {
 		value: sums.centreY,
 		dimension: firstY.dimension,
@@ -157,111 +142,48 @@ function assemble(
 	const interceptParts = new Map(centreParts);
 	for (const [source, part] of slopeParts) addPart(interceptParts, source, -sums.centreX * part);
 	return {
-		points: x.length,
-		degreesOfFreedom,
-		policy,
-		slope,
-		intercept: { ...centre, value: sums.centreY - sums.slope * sums.centreX, parts: interceptParts },
+		slope: {
+			value: sums.slope,
+			dimension: slopeUnit.dimension,
+			unit: slopeUnit,
+			point: false,
+			parts: slopeParts
+		},
 		centre,
-		centreX: sums.centreX,
-		spreadX: sums.xx,
-		residuals: sums.residuals,
-		residualStandardDeviation: deviation,
-		chiSquared: chiSquared(x, y, sums)
+		intercept: { ...centre, value: sums.centreY - sums.slope * sums.centreX, parts: interceptParts }
 	};
 }
 
-function requireEnough(xs: readonly number[], policy: FitPolicy): void {
+/** Covariance of slope and intercept from the scatter, or from the readings' own parts. */
+function ownCovariance(
+	slopeParts: ReadonlyMap<Source, number>,
+	centreParts: ReadonlyMap<Source, number>,
+	centreX: number,
+	policy: FitPolicy,
+	scattered: ReadonlySet<Source>
+): number {
+	let sum = 0;
+	for (const [source, part] of slopeParts) {
+		const own = policy === 'scatter' ? scattered.has(source) : source.component.scope === 'reading';
+		if (own) sum += part * ((centreParts.get(source) ?? 0) - centreX * part);
+	}
+	return sum;
+}
+
+function requireEnough(xs: readonly number[], policy: FitPolicy, through: Through): void {
 	if (xs.length === 0) throw new FitProblem('too-few-points', 'No points yet.');
+	if (through === 'origin') {
+		if (xs.length === 1 && policy === 'scatter') {
+			throw new FitProblem('too-few-points', 'One point leaves no scatter. Add one.');
+		}
+		if (xs.every((value) => value === 0)) throw noSpread(through);
+		return;
+	}
 	if (xs.length === 1) throw new FitProblem('too-few-points', 'One point has no line. Add two.');
 	if (xs.length === 2 && policy === 'scatter') {
 		throw new FitProblem('too-few-points', 'Two points leave no scatter. Add one.');
 	}
-	if (xs.every((value) => value === xs[0])) {
-		throw new FitProblem(
-			'no-spread',
-			'All points have the same x, so there is no line through them. Vary it.'
-		);
-	}
-}
-
-function leastSquares(xs: readonly number[], ys: readonly number[], w: readonly number[]): Sums {
-	const total = compensatedSum(w);
-	const centreX = centreOf(xs, w, total);
-	const centreY = centreOf(ys, w, total);
-	const dx = xs.map((value) => value - centreX);
-	const dy = ys.map((value) => value - centreY);
-	const xx = compensatedSum(dx.map((d, i) => (w[i] ?? 0) * d * d));
-	const xy = compensatedSum(dx.map((d, i) => (w[i] ?? 0) * d * (dy[i] ?? 0)));
-	if (!(xx > 0))
-		throw new FitProblem(
-			'no-spread',
-			'All points have the same x, so there is no line through them. Vary it.'
-		);
-	const slope = xy / xx;
-	return {
-		w,
-		total,
-		centreX,
-		centreY,
-		dx,
-		dy,
-		xx,
-		slope,
-		residuals: dx.map((d, i) => (dy[i] ?? 0) - slope * d)
-	};
-}
-
-/** Weighted mean, corrected once by the mean of what is left: rounding of the first pass drops out. */
-function centreOf(values: readonly number[], w: readonly number[], total: number): number {
-	const first = compensatedSum(values.map((value, i) => (w[i] ?? 0) * value)) / total;
-	return first + compensatedSum(values.map((value, i) => (w[i] ?? 0) * (value - first))) / total;
-}
-
-/** Effective variance: the weights depend on the slope, so it is repeated until the slope stands (a few rounds). */
-function weighted(
-	x: readonly Quantity[],
-	y: readonly Quantity[],
-	xs: readonly number[],
-	ys: readonly number[],
-	start: Sums
-): Sums {
-	let sums = start;
-	for (let round = 0; round < 50; round += 1) {
-		const variances = readingVariances(x, y, sums.slope);
-		if (variances.some((size) => !(size > 0))) {
-			throw new FitProblem(
-				'no-stated-uncertainty',
-				'A weighted line wants an uncertainty for every reading. State it in the columns.'
-			);
-		}
-		const next = leastSquares(xs, ys, variances.map((size) => 1 / size)); // prettier-ignore
-		const settled = Math.abs(next.slope - sums.slope) <= 1e-14 * Math.abs(next.slope);
-		sums = next;
-		if (settled) break;
-	}
-	return sums;
-}
-
-/** Variance of y - slope * x at each point from its reading-scope parts alone. */
-function readingVariances(x: readonly Quantity[], y: readonly Quantity[], slope: number): number[] {
-	return y.map((quantity, i) => {
-		const parts = new Map<Source, number>();
-		for (const [source, part] of quantity.parts)
-			if (source.component.scope === 'reading') addPart(parts, source, part);
-		for (const [source, part] of x[i]?.parts ?? []) {
-			if (source.component.scope === 'reading') addPart(parts, source, -slope * part);
-		}
-		let size = 0;
-		for (const part of parts.values()) size += part * part;
-		return size;
-	});
-}
-
-function chiSquared(x: readonly Quantity[], y: readonly Quantity[], sums: Sums): number | null {
-	const variances = readingVariances(x, y, sums.slope);
-	if (variances.some((size) => !(size > 0))) return null;
-	return compensatedSum(sums.residuals.map((residual, i) => (residual * residual) / (variances[i] ?? 1)));
+	if (xs.every((value) => value === xs[0])) throw noSpread(through);
 }
 
 /**

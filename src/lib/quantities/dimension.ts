@@ -14,8 +14,12 @@ export function divideDimensions(a: Dimension, b: Dimension): Dimension {
 }
 
 export function raiseDimension(a: Dimension, exponent: number): Dimension {
-	// + 0 turns -0 into 0, which would otherwise show up when dimensions are compared as JSON
-	const raise = (n: number) => n * exponent + 0;
+	const raise = (n: number) => {
+		const raised = n * exponent;
+		const whole = Math.round(raised);
+		// thirds of a cube come back whole; + 0 turns -0 into 0, which would show up when dimensions are compared as JSON
+		return (Math.abs(raised - whole) < 1e-9 ? whole : raised) + 0;
+	};
 	return [raise(a[0]), raise(a[1]), raise(a[2]), raise(a[3]), raise(a[4]), raise(a[5]), raise(a[6])];
 }
 
@@ -51,6 +55,19 @@ const named: readonly [string, Dimension][] = [
 	['concentration', [-3, 0, 0, 0, 0, 1, 0]],
 	['molar mass', [0, 1, 0, 0, 0, -1, 0]],
 	['rate constant', [0, 0, -1, 0, 0, 0, 0]],
+	['second-order rate constant', [3, 0, -1, 0, 0, -1, 0]],
+	['molar volume', [3, 0, 0, 0, 0, -1, 0]],
+	['energy per mass', [2, 0, -2, 0, 0, 0, 0]],
+	['heat capacity per mass', [2, 0, -2, 0, -1, 0, 0]],
+	['reciprocal length', [-1, 0, 0, 0, 0, 0, 0]],
+	['specific rotation', [2, -1, 0, 0, 0, 0, 0]],
+	['force', [1, 1, -2, 0, 0, 0, 0]],
+	['power', [2, 1, -3, 0, 0, 0, 0]],
+	['rate of heating', [0, 0, -1, 0, 1, 0, 0]],
+	['electric charge', [0, 0, 1, 1, 0, 0, 0]],
+	['electric resistance', [2, 1, -3, -2, 0, 0, 0]],
+	['electric conductance', [-2, -1, 3, 2, 0, 0, 0]],
+	['capacitance', [-2, -1, 4, 2, 0, 0, 0]],
 	['voltage', [2, 1, -3, -1, 0, 0, 0]]
 ];
 

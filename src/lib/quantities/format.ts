@@ -1,4 +1,4 @@
-import { unitHtml, unitSpeech, unitTex, unitText } from './unit-text';
+import { isGlued, unitHtml, unitSpeech, unitTex, unitText } from './unit-text';
 import type { Unit } from './units';
 
 /** One value in the four forms in which it is told. Rounding happens here and nowhere else. */
@@ -138,9 +138,9 @@ function lastDigits(digits: string, uncertainty: string | null): string {
 function unitForms(unit: Unit): [string, string, string] {
 	const text = unitText(unit);
 	if (text === '1') return ['', '', ''];
-	const glued = text === '%';
+	const glued = isGlued(unit);
 	return [
-		(glued ? '' : thinSpace) + text.replace(/\^(-?\d+)/g, (_, digits: string) => raise(digits)),
+		(glued ? '' : thinSpace) + text.replace(/\^(-?\d+)(?![.\d])/g, (_, digits: string) => raise(digits)),
 		(glued ? '' : '~') + unitTex(unit),
 		`${glued ? '' : thinSpace}<span class="unit">${unitHtml(unit)}</span>`
 	];

@@ -30,6 +30,7 @@ export {
 	covariance,
 	differenceIn,
 	exactly,
+	isDifference,
 	isExact,
 	plainNumber,
 	propagate,
@@ -50,18 +51,15 @@ export {
 	absolute,
 	add,
 	divide,
-	exp,
-	interpolate,
-	ln,
-	mean,
 	multiply,
 	negate,
 	power,
 	squareRoot,
 	subtract,
-	sum,
 	thermodynamicTemperature
 } from './operations';
+export { arccosine, arcsine, arctangent, cosine, exp, ln, log10, sine, tangent } from './functions';
+export { interpolate, maximum, mean, minimum, standardDeviation, sum, uncertaintyOf } from './lists';
 export { coverageFactor } from './student';
 export { parseTypedNumber, type NumberReading, type TypedNumber } from './parse-number';
 export {

@@ -39,6 +39,8 @@ export interface Quantity {
 	readonly unit: Unit;
 	/** a point on a scale of temperature (25 degC), not a difference of temperatures (25 K) */
 	readonly point: boolean;
+	/** known to be a difference of temperatures, so that no scale can tell it; absent where nobody can know */
+	readonly difference?: true;
 	readonly parts: LinearParts;
 }
 
@@ -118,10 +120,24 @@ export function toldIn(quantity: Quantity, unit: Unit): Quantity {
 		);
 	}
 	if (unit.offset !== 0 && !quantity.point) {
+		if (isDifference(quantity)) {
+			throw new QuantityProblem(
+				'temperature-points',
+				'This is a difference of temperatures. Tell it in kelvins: on the Celsius scale it would be 273.15 off.'
+			);
+		}
 		// An absolute temperature computed in kelvins is a point; whether a sum of differences is, nobody can know here.
 		return { ...quantity, unit, point: true };
 	}
 	return { ...quantity, unit };
+}
+
+export function isDifference(quantity: Quantity): boolean {
+	return quantity.difference === true;
+}
+
+export function markDifference(quantity: Quantity, mark: boolean): Quantity {
+	return mark ? { ...quantity, difference: true } : quantity;
 }
 
 /** The value in its own unit. */

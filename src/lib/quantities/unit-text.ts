@@ -4,15 +4,30 @@ import { entryOf, type Unit, type UnitFactor } from './units';
 const thinSpace = '\u2009';
 const minus = '\u2212';
 
-function symbolText({ base, prefix }: UnitFactor): string {
-	const prefixText = prefix === 'u' ? 'µ' : prefix;
-	return prefixText + (entryOf(base).text ?? base);
+/** A sign such as ° stands alone; in a product its place is taken by the symbol, deg. */
+function isSign(unit: Unit): boolean {
+	const [only, ...others] = unit.factors;
+	return only !== undefined && others.length === 0 && only.exponent === 1 && entryOf(only.base).sign === true;
+}
+
+/** Whether a number and the unit stand together without a space (ISO 80000-1: degrees of angle alone). */
+export function isGlued(unit: Unit): boolean {
+	return isSign(unit);
+}
+
+type Form = 'text' | 'tex' | 'html';
+
+function symbolIn(form: Form, { base, prefix }: UnitFactor, alone: boolean): string {
+	const entry = entryOf(base);
+	const micro = form === 'tex' ? '\\text{µ}' : 'µ';
+	const written = (form === 'text' ? undefined : entry[form]) ?? (form === 'tex' ? undefined : entry.text);
+	return (prefix === 'u' ? micro : prefix) + (entry.sign && !alone ? base : (written ?? base));
 }
 
 /** As people type it: 'kJ/mol', 'J/(mol K)', 'K^-1', 'm^3', '1' for a number. `parseUnit` reads it back. */
 export function unitText(unit: Unit): string {
 	const write = (factor: UnitFactor, exponent: number) =>
-		symbolText(factor) + (exponent === 1 ? '' : `^${exponent}`);
+		symbolIn('text', factor, isSign(unit)) + (exponent === 1 ? '' : `^${exponent}`);
 	const above = unit.factors.filter((factor) => factor.exponent > 0);
 	const below = unit.factors.filter((factor) => factor.exponent < 0);
 	if (above.length === 0) return below.map((factor) => write(factor, factor.exponent)).join(' ') || '1';
@@ -22,13 +37,14 @@ export function unitText(unit: Unit): string {
 	return `${numerator}/${denominator.length === 1 ? denominator.join('') : `(${denominator.join(' ')})`}`;
 }
 
-/** KaTeX source with negative exponents: '\mathrm{kJ\,mol^{-1}}'; empty for a number. */
+/** KaTeX source with negative exponents: '\\mathrm{kJ\\,mol^{-1}}'; empty for a number. */
 export function unitTex(unit: Unit): string {
 	if (unit.factors.length === 0) return '';
 	const parts = unit.factors.map((factor) => {
-		const prefix = factor.prefix === 'u' ? '\\text{µ}' : factor.prefix;
-		const symbol = prefix + (entryOf(factor.base).tex ?? factor.base);
-		return factor.exponent === 1 ? symbol : `${symbol}^{${factor.exponent}}`;
+		const symbol = symbolIn('tex', factor, isSign(unit));
+		if (factor.exponent === 1) return symbol;
+		// a symbol with a subscript of its own takes its exponent outside of it
+		return `${symbol.includes('_') ? `{${symbol}}` : symbol}^{${factor.exponent}}`;
 	});
 	return `\\mathrm{${parts.join('\\,')}}`;
 }
@@ -37,7 +53,10 @@ export function unitTex(unit: Unit): string {
 export function unitHtml(unit: Unit): string {
 	return unit.factors
 		.map((factor) => {
-			const symbol = escapeHtml(symbolText(factor));
+			// markup of the table itself stands as it is; everything else is text
+			const symbol = entryOf(factor.base).html
+				? symbolIn('html', factor, isSign(unit))
+				: escapeHtml(symbolIn('html', factor, isSign(unit)));
 			if (factor.exponent === 1) return symbol;
 			return `${symbol}<sup>${String(factor.exponent).replace('-', minus)}</sup>`;
 		})

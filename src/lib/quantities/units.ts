@@ -5,6 +5,7 @@ import {
 	sameDimension,
 	type Dimension
 } from './dimension';
+import { pow } from './elementary';
 import { QuantityProblem } from './problems';
 import { prefixFactors, unitAliases, unitTable, type UnitEntry } from './unit-table';
 
@@ -89,15 +90,20 @@ export function composeUnit(factors: readonly UnitFactor[]): Unit {
 		const entry = entryOf(base);
 		const size = entry.factor * (prefixFactors[prefix]?.[0] ?? 1);
 		// numerator and denominator apart: dividing once keeps '1/min' and the like correctly rounded
-		for (let i = 0; i < Math.abs(exponent); i += 1) {
-			if (exponent > 0) numerator *= size;
-			else denominator *= size;
-		}
+		if (exponent > 0) numerator *= raised(size, exponent);
+		else denominator *= raised(size, -exponent);
 		dimension = multiplyDimensions(dimension, raiseDimension(entry.dimension, exponent));
 	}
 	const alone = kept.length === 1 && kept[0]?.exponent === 1 ? kept[0] : undefined;
 	const offset = alone ? (entryOf(alone.base).offset ?? 0) : 0;
 	return { factors: kept, factor: numerator / denominator, offset, dimension };
+}
+
+function raised(size: number, exponent: number): number {
+	let product = 1;
+	const whole = Math.floor(exponent);
+	for (let i = 0; i < whole; i += 1) product *= size;
+	return exponent === whole ? product : product * pow(size, exponent - whole);
 }
 
 const quotients = new WeakMap<Unit, WeakMap<Unit, Unit>>();
@@ -112,6 +118,20 @@ export function divideUnits(a: Unit, b: Unit): Unit {
 
 export function multiplyUnits(a: Unit, b: Unit): Unit {
 	return remembered(products, a, b, () => [...a.factors, ...b.factors]);
+}
+
+const powers = new WeakMap<Unit, Map<number, Unit>>();
+
+/** The unit of a power; `dimension` is the power's, for which a coherent unit stands in where exponents grow unwieldy. */
+export function raiseUnit(unit: Unit, exponent: number, dimension: Dimension): Unit {
+	const known = powers.get(unit)?.get(exponent);
+	if (known) return known;
+	const factors = unit.factors.map((factor) => ({ ...factor, exponent: factor.exponent * exponent }));
+	// halves are written as they are, m^0.5; a third would be an endless decimal
+	const tidy = factors.every((factor) => Number.isInteger(2 * factor.exponent));
+	const result = tidy ? composeUnit(factors.map(asInterval)) : coherentUnit(dimension);
+	powers.set(unit, (powers.get(unit) ?? new Map<number, Unit>()).set(exponent, result));
+	return result;
 }
 
 /** The same few units meet in every row of a table, so each pair is put together once. */
@@ -165,10 +185,15 @@ class UnitReader {
 
 	constructor(private readonly text: string) {
 		const plain = text
+			// degrees Celsius with a space inside; an angle times a coulomb is nobody's unit
+			.replace(/(?:°|º|deg)\s+[cC](?![\p{L}\d])/gu, 'degC')
 			.replace(/[⁻¹²³⁴⁰]+/gu, (run) => '^' + [...run].map((sign) => superscripts[sign] ?? '').join(''))
 			.replace(/\u2212/gu, '-')
+			// the sign of the ohm that Unicode keeps beside the Greek letter
+			.replace(/\u2126/gu, '\u03a9')
 			.replace(/[·⋅]/gu, ' ');
-		this.tokens = plain.match(/\^?-?\d+|[()/*^]|[%°ºµμ℃\p{L}]+|\S/gu) ?? [];
+		// a number in a symbol (mmH2O) is no exponent; exponents with a decimal sign want their ^
+		this.tokens = plain.match(/[cm]mH[2₂]O|\^-?\d+\.\d+|\^?-?\d+|[()/*^]|[%°ºµμ℃\p{L}]+|\S/gu) ?? [];
 	}
 
 	read(): UnitFactor[] {
@@ -217,7 +242,7 @@ class UnitReader {
 
 	private exponent(): number {
 		const token = this.tokens[this.at];
-		if (token === undefined || !/^\^?-?\d+$/.test(token)) return 1;
+		if (token === undefined || !/^\^?-?\d+(?:\.\d+)?$/.test(token)) return 1;
 		this.at += 1;
 		return Number(token.replace('^', ''));
 	}

@@ -36,6 +36,8 @@ export interface LiveDocumentOptions<Content> {
 	epoch: number;
 	/** id of the person at the keyboard: copies on this device are theirs alone */
 	person: string;
+	/** what it is, for the list of what is not stored yet: "Abstract" */
+	title: string;
 	/** readings and the like say what their content is; a section's is its text */
 	content?: (doc: Y.Doc) => Content;
 	url?: string;
@@ -62,6 +64,8 @@ export function openLiveDocument<Content = string>(
 		changed: () => take()
 	};
 	const connection = new LiveConnection<Content>(settings);
+	// The page it is written on, also once the person has gone to another.
+	const place = { title: options.title, href: location.pathname };
 	// One state for each property, so that a reader of the document is not woken by every stored edit.
 	let doc = $state.raw(connection.doc);
 	let awareness = $state.raw(connection.awareness);
@@ -83,7 +87,7 @@ export function openLiveDocument<Content = string>(
 		synced = connection.synced;
 		canWrite = connection.canWrite;
 		unsent = connection.unsent;
-		noteUnconfirmed(options.person, options.documentId, waiting > 0 || unsent !== null);
+		noteUnconfirmed(options.person, options.documentId, waiting > 0 || unsent !== null ? place : null);
 	}
 
 	return {

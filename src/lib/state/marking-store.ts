@@ -1,25 +1,24 @@
+import { noteUnconfirmed } from './local-copies';
 import type { Write } from './marking-queue';
+import { keep, kept } from './on-this-device';
 
-// What is unsent outlives the page: on this device, under the marking's own key.
-const keyOf = (marking: string) => `meniscus:marking:${marking}`;
-
-export function loadQueue(marking: string): Write[] {
-	try {
-		const kept: unknown = JSON.parse(localStorage.getItem(keyOf(marking)) ?? '[]');
-		return Array.isArray(kept) ? (kept as Write[]) : [];
-	} catch {
-		// Unreadable or forbidden storage: there is nothing to resend.
-		return [];
-	}
+/** What is unsent outlives the page: on this device, for the one who did it. */
+export function loadQueue(person: string, marking: string): Write[] {
+	const queue = kept(person, 'marking', marking);
+	return Array.isArray(queue) ? (queue as Write[]) : [];
 }
 
 /** False when the device keeps nothing: then leaving the page would lose what is unsent. */
-export function saveQueue(marking: string, queue: readonly Write[]): boolean {
-	try {
-		if (queue.length === 0) localStorage.removeItem(keyOf(marking));
-		else localStorage.setItem(keyOf(marking), JSON.stringify(queue));
-		return true;
-	} catch {
-		return false;
-	}
+export function saveQueue(
+	person: string,
+	marking: { id: string; label: string; href: string },
+	queue: readonly Write[]
+): boolean {
+	const waiting = queue.length > 0;
+	noteUnconfirmed(
+		person,
+		marking.id,
+		waiting ? { title: `Marking of ${marking.label}`, href: marking.href } : null
+	);
+	return keep(person, 'marking', marking.id, waiting ? queue : null);
 }

@@ -40,6 +40,7 @@ export class Marking {
 	#inFlight = 0;
 	#turn = 0;
 	#timer: ReturnType<typeof setTimeout> | undefined;
+	readonly #person: string;
 	#alias: string;
 	#running: Promise<void> | null = null;
 
@@ -60,7 +61,9 @@ export class Marking {
 		this.state === null || this.state.finishedAt !== null || this.state.returned || this.status === 'refused'
 	);
 
-	constructor(alias: string, state: MarkingState | null) {
+	/** `person` is the id of the marker: what is unsent here is theirs alone. */
+	constructor(person: string, alias: string, state: MarkingState | null) {
+		this.#person = person;
 		this.#alias = alias;
 		this.state = state;
 		this.status = state ? 'stored' : 'unopened';
@@ -75,7 +78,7 @@ export class Marking {
 		window.addEventListener('online', again);
 		void this.#open().then(() => {
 			if (!this.state) return;
-			this.#queue = loadQueue(this.state.id);
+			this.#queue = loadQueue(this.#person, this.state.id);
 			if (this.#queue.length > 0) void this.#run();
 		});
 		return () => {
@@ -131,7 +134,7 @@ export class Marking {
 
 	#keep(queue: Write[]): void {
 		this.#queue = queue;
-		if (this.state) saveQueue(this.state.id, queue);
+		if (this.state) saveQueue(this.#person, { ...this.state, href: location.pathname }, queue);
 	}
 
 	/** Resolves when everything is stored; false when it could not be. */

@@ -29,6 +29,8 @@ export interface ReadingsSheetOptions {
 	readings: Readings;
 	document: { id: string; epoch: number; canWrite: boolean; closed: 'frozen' | 'sealed' | null };
 	person: Person;
+	/** title of the work they are of */
+	work: string;
 	/** the course's, for times of day */
 	zone: string;
 }
@@ -117,12 +119,13 @@ export class ReadingsSheet {
 
 	/** Opens the live document; call it inside an effect of the page, which closes it again. */
 	open(): () => void {
-		const { document, person } = this.#options;
+		const { document, person, work } = this.#options;
 		const live = untrack(() =>
 			openLiveDocument<Readings>({
 				documentId: document.id,
 				epoch: document.epoch,
 				person: person.id,
+				title: `Readings of ${work}`,
 				write: document.canWrite,
 				content: (doc) => readReadings(doc, this.#tableNames)
 			})

@@ -31,9 +31,15 @@ export class LiveReport {
 	#wasOffline = $state(false);
 	#cameBack = $state(false);
 
-	constructor(report: reports.Report, sheet: ReportSheet, person: Person) {
+	/** `work` is the title of what the report is on. */
+	constructor(report: reports.Report, sheet: ReportSheet, person: Person, work: string) {
 		for (const { key, title, document: documentId, epoch } of report.sections) {
-			this.sections[key] = openLiveDocument({ documentId, epoch, person: person.id });
+			this.sections[key] = openLiveDocument({
+				documentId,
+				epoch,
+				person: person.id,
+				title: `${title} of ${work}`
+			});
 			this.#titles[key] = title;
 		}
 		const tables = sheet.worksheet.tables.map(({ name }) => name);
@@ -41,6 +47,7 @@ export class LiveReport {
 			documentId: report.readings.document,
 			epoch: report.readings.epoch,
 			person: person.id,
+			title: `Readings of ${work}`,
 			content: (doc) => readReadings(doc, tables)
 		});
 		this.#stop = $effect.root(() => {

@@ -4,28 +4,20 @@ import type { marking as contracts } from '$lib/contracts';
 import type { ReplyShape } from '$lib/contracts/marking';
 import { request } from './api';
 import { ReadInView } from './marking-reading.svelte';
+import { keep, kept } from './on-this-device';
 
-const keyOf = (report: string) => `meniscus:read:${report}`;
-
-function knownRead(report: string): string[] {
-	try {
-		const kept: unknown = JSON.parse(localStorage.getItem(keyOf(report)) ?? '[]');
-		return Array.isArray(kept) ? kept.filter((one) => typeof one === 'string') : [];
-	} catch {
-		return [];
-	}
+function knownRead(person: string, report: string): string[] {
+	const known = kept(person, 'read', report);
+	return Array.isArray(known) ? known.filter((one) => typeof one === 'string') : [];
 }
 
-/** Remarks read on this device. Which ones somebody has read is nobody else's business, so the server is not told. */
-export function readRemarks(report: string): ReadInView {
-	const known = knownRead(report);
+/** Remarks this person read on this device. Which ones somebody has read is nobody else's business, so the server is not told. */
+export function readRemarks(person: string, report: string): ReadInView {
+	const known = knownRead(person, report);
 	return new ReadInView(known, (remark) => {
 		known.push(remark);
-		try {
-			localStorage.setItem(keyOf(report), JSON.stringify(known));
-		} catch {
-			// A device that keeps nothing shows them as unread next time.
-		}
+		// A device that keeps nothing shows them as unread next time.
+		keep(person, 'read', report, known);
 	});
 }
 

@@ -2,7 +2,6 @@ import { redirect, type RequestEvent } from '@sveltejs/kit';
 import * as accounts from '$lib/server/accounts';
 import type { Act, Viewer } from '$lib/server/auth';
 import { formFailure, forPage } from '$lib/server/http';
-import { dropSession } from '$lib/server/requests';
 import { browserName } from './browser-name';
 import type { Actions, PageServerLoad } from './$types';
 
@@ -39,10 +38,5 @@ export const actions: Actions = {
 		} catch (thrown) {
 			return formFailure(thrown);
 		}
-	},
-	everywhere: async (event) => {
-		await accounts.signOutEverywhere(actOf(event));
-		dropSession(event.cookies);
-		redirect(303, '/sign-in');
 	}
 };

@@ -5,12 +5,18 @@ import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = ({ locals }) => {
 	if (!locals.viewer) redirect(303, '/sign-in');
-	return { name: locals.viewer.name };
+	const { id, name } = locals.viewer;
+	return { person: { id, name } };
 };
 
 export const actions: Actions = {
-	default: async ({ locals, cookies }) => {
+	here: async ({ locals, cookies }) => {
 		if (locals.viewer && locals.session) await accounts.signOut({ viewer: locals.viewer }, locals.session);
+		dropSession(cookies);
+		redirect(303, '/sign-in');
+	},
+	everywhere: async ({ locals, cookies }) => {
+		if (locals.viewer) await accounts.signOutEverywhere({ viewer: locals.viewer });
 		dropSession(cookies);
 		redirect(303, '/sign-in');
 	}

@@ -2,7 +2,8 @@ import { readFileSync } from 'node:fs';
 import { readTemplate, type TemplateFiles } from '$lib/worksheets/authoring';
 import type { ReadingRow, Readings, Worksheet } from '$lib/worksheets';
 
-const folder = new URL('../../templates/vaporization-of-water/', import.meta.url);
+/** A small worksheet of one table and one line. The experiment in `templates/` holds more and grows. */
+const folder = new URL('data/water-line/', import.meta.url);
 
 export const templateFiles: TemplateFiles = {
 	'template.yaml': readFileSync(new URL('template.yaml', folder), 'utf8'),
@@ -14,7 +15,10 @@ export const water = JSON.parse(
 	JSON.stringify(readTemplate(templateFiles, 'templates/vaporization-of-water'))
 ) as Worksheet;
 
-export const exampleCsv = readFileSync(new URL('example/readings.csv', folder), 'utf8');
+export const exampleCsv = readFileSync(
+	new URL('../../templates/vaporization-of-water/example/readings.csv', import.meta.url),
+	'utf8'
+);
 
 /**
  * Ten equal steps of pressure: boiling temperatures (degC) from 400 to 760 torr by 40, rounded to 0.01 K, computed

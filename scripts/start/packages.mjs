@@ -58,11 +58,15 @@ export async function ensurePackages(say) {
 /** @param {(text: string) => void} say */
 async function install(say) {
 	const lockText = readFileSync(join(root, 'package-lock.json'), 'utf8');
-	const hash = sha256(`${lockText}${process.version}${process.arch}`);
+	// Mended packages are part of what has to be there: changed mends are made without installing again.
+	const mends = join(root, 'scripts/mend-packages.mjs');
+	const hash = sha256(`${lockText}${readFileSync(mends, 'utf8')}${process.version}${process.arch}`);
 	const record = kept('packages.hash');
 	const installed = readIfThere(join(root, 'node_modules/.package-lock.json'));
 	if (installed !== undefined && readIfThere(record) === hash) return 'up to date';
 	if (isInstalled(lockText, installed)) {
+		const { code, output } = await run(process.execPath, [mends], { cwd: root });
+		if (code !== 0) throw new StartProblem(`The packages could not be mended:\n${output.trim()}`);
 		writeWhole(record, hash, 0o644);
 		return 'up to date';
 	}

@@ -1,4 +1,3 @@
-import { readdirSync, readFileSync } from 'node:fs';
 import postgres from 'postgres';
 import { afterAll, beforeAll, expect, it } from 'vitest';
 import { encodeDocument, readReadings, readText } from './stored-document';
@@ -13,6 +12,7 @@ import {
 	type RunningServer,
 	type ThrowAwayCluster
 } from '../harness';
+import { isRunning, killCluster } from '../kill-cluster';
 import {
 	emptyLedger,
 	handInAgain,
@@ -49,44 +49,6 @@ afterAll(async () => {
 	process.env['TEST_DATABASE_APPLICATION_URL'] = outer.application;
 	await cluster?.remove();
 });
-
-function childrenOf(pid: number): number[] {
-	return readdirSync('/proc')
-		.filter((name) => /^\d+$/.test(name))
-		.filter((name) => {
-			try {
-				const stat = readFileSync(`/proc/${name}/stat`, 'utf8');
-				return Number(stat.slice(stat.lastIndexOf(')') + 2).split(' ')[1]) === pid;
-			} catch {
-				return false;
-			}
-		})
-		.map(Number);
-}
-
-/** Ends postmaster and children, and waits until they hold nothing any more. */
-async function killCluster(pid: number): Promise<void> {
-	// The postmaster first, so that it cannot look after its children; then they, so that nothing they hold goes on.
-	const all = [pid, ...childrenOf(pid)];
-	for (const each of all) {
-		try {
-			process.kill(each, 'SIGKILL');
-		} catch {
-			// gone already
-		}
-	}
-	while (all.some(isRunning)) await new Promise((resolve) => setTimeout(resolve, 5));
-}
-
-/** False for what is gone, and for what waits only to be counted out by its parent. */
-function isRunning(pid: number): boolean {
-	try {
-		const stat = readFileSync(`/proc/${pid}/stat`, 'utf8');
-		return !/^[ZX]$/.test(stat.slice(stat.lastIndexOf(')') + 2).split(' ')[0] ?? 'X');
-	} catch {
-		return false;
-	}
-}
 
 async function rows<T extends Record<string, unknown>>(url: string, query: string): Promise<T[]> {
 	const sql = postgres(url, { max: 1, onnotice: () => undefined });

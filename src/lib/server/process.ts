@@ -28,6 +28,7 @@ const tasks: jobs.Tasks = {
 	deliver: (payload) => mail.deliver(field(payload, 'id')),
 	mailReset: (payload) => accounts.mailReset(field(payload, 'email')),
 	tidy: async () => {
+		await jobs.freeAbandoned(database());
 		await mail.sweep();
 		await accounts.tidy();
 		await files.tidy();
@@ -38,22 +39,6 @@ const tasks: jobs.Tasks = {
 	}
 };
 
-const lostConnection =
-	/ECONNREFUSED|ECONNRESET|CONNECTION_|57P0[123]|Connection terminated|connection error|shutting down|starting up/i;
-
-/**
- * The job runner leaves promises that nobody awaits when the database goes away. That is no reason to end: it is taken up
- * again. Everything else nobody awaited ends the process as before.
- */
-function outliveLostConnections(): void {
-	process.on('unhandledRejection', (thrown) => {
-		const text =
-			thrown instanceof Error ? `${thrown.message} ${'code' in thrown ? String(thrown.code) : ''}` : '';
-		if (!lostConnection.test(text)) throw thrown;
-		logger.warn({ err: thrown }, 'the database was lost meanwhile');
-	});
-}
-
 /** Works through the queue in this process. */
 export const startJobs = () => jobs.start(tasks, ['tidy', 'freeze']);
 
@@ -63,7 +48,6 @@ export const startJobs = () => jobs.start(tasks, ['tidy', 'freeze']);
  */
 export async function startProcess(): Promise<void> {
 	// Loaded here, not above: whoever only works through the queue needs no live editing.
-	outliveLostConnections();
 	const { closeLive, handleUpgrade, startLive } = await import('./collab');
 	await startLive();
 	holder[liveSymbol] = { handleUpgrade, close: closeLive };

@@ -1,1 +1,2 @@
+export { freeAbandoned } from './free-abandoned';
 export { start, type Jobs, type Tasks } from './start';

@@ -26,7 +26,7 @@ export interface Jobs {
 /**
  * Works through the queue in this process until stopped. Any number of processes may do so. The queue's tables must be
  * there: the migrations make them. A runner that gives up because the database was lost is followed by another one:
- * the process goes on serving meanwhile.
+ * the process goes on serving meanwhile. What it was at stays locked: {@link freeAbandoned}.
  * @param tasks one for each name in the queue
  * @param everyMinute names of tasks that also run by the clock, once for all processes
  */
@@ -47,11 +47,13 @@ export async function start(tasks: Tasks, everyMinute: string[] = []): Promise<J
 			logger: quiet,
 			crontab: everyMinute.map((name) => `* * * * * ${name} ?max=3`).join('\n')
 		});
+		// It settles in both ways when it gives up: what stopped it is then in its own lines.
+		begun.promise.then(() => again(), again);
 		runner = begun;
 		tries = 0;
-		begun.promise.catch((thrown: unknown) => again(thrown));
+		if (stopped) await begun.stop();
 	};
-	const again = (thrown: unknown) => {
+	const again = (thrown?: unknown) => {
 		runner = null;
 		if (stopped) return;
 		log.warn({ err: thrown }, 'the queue stopped; it is taken up again');

@@ -27,6 +27,7 @@ export {
 	combinedUncertainty,
 	combineVariances,
 	componentVariances,
+	correlation,
 	covariance,
 	differenceIn,
 	exactly,
@@ -60,6 +61,7 @@ export {
 } from './operations';
 export { arccosine, arcsine, arctangent, cosine, exp, ln, log10, sine, tangent } from './functions';
 export { interpolate, maximum, mean, minimum, standardDeviation, sum, uncertaintyOf } from './lists';
+export { correlated, covarianceFrom, covarianceOfMeans, type CovarianceMatrix } from './correlated';
 export { coverageFactor } from './student';
 export { parseTypedNumber, type NumberReading, type TypedNumber } from './parse-number';
 export {

@@ -5,6 +5,7 @@ export type QuantityProblemCode =
 	| 'dimension'
 	| 'temperature-points'
 	| 'domain'
+	| 'covariance'
 	| 'not-finite';
 
 /** Something that cannot be computed, said in words a student understands. The only error that this module throws. */

@@ -157,6 +157,11 @@ export function covariance(a: Quantity, b: Quantity): number {
 	return sum;
 }
 
+/** Correlation coefficient of two uncertain quantities; NaN where one is exact. */
+export function correlation(a: Quantity, b: Quantity): number {
+	return covariance(a, b) / Math.sqrt(variance(a) * variance(b));
+}
+
 export function variance(quantity: Quantity): number {
 	let sum = 0;
 	for (const part of quantity.parts.values()) sum += part * part;

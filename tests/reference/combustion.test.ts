@@ -1,0 +1,321 @@
+import { describe, expect, it } from 'vitest';
+import { evaluate, readTable, type Evaluation, type Readings } from '$lib/worksheets';
+import { exampleText, readingsOf, worksheetOf, type Session } from './simulated-session';
+
+interface Options {
+	runs?: number;
+	noise?: number;
+	scatter?: number;
+	digits?: boolean;
+	fore?: number;
+	main?: number;
+	late?: number;
+	step?: number;
+	lag?: number;
+	cooling?: number;
+	stirring?: number;
+}
+interface Curve {
+	rise: number;
+	lag: number;
+	cooling: number;
+	jacket: number;
+	stirring: number;
+	start: number;
+	firing: number;
+}
+interface Simulation {
+	simulate: (seed: number, options?: Options) => Session;
+	temperature: (curve: Curve) => (minutes: number) => number;
+	reduction: (conditions: Record<string, number>) => number;
+	truth: { heatCapacity: number; standardEnergy: number; molarEnergy: number };
+}
+const { simulate, temperature, reduction, truth } =
+	(await import('../../templates/combustion/simulate.mjs')) as Simulation;
+
+const worksheet = worksheetOf('combustion');
+/** Molar gas constant, CODATA 2018, as the worksheet states it. */
+const gasConstant = 8.314462618;
+
+const exact = (options: Options = {}) => simulate(1, { noise: 0, digits: false, ...options });
+const work = (session: Session): Evaluation => evaluate(worksheet, readingsOf(session));
+const value = (evaluation: Evaluation, name: string) => evaluation.quantities[name]?.value ?? NaN;
+
+/** The cells of a computed column of runs, by run. */
+function ofRuns(evaluation: Evaluation, column: string): Record<string, number> {
+	const rows = evaluation.tables['runs']?.rows ?? [];
+	return Object.fromEntries(
+		rows.flatMap(({ cells }) => {
+			const found = cells[column]?.value;
+			return typeof found === 'number' ? [[cells['run']?.text ?? '', found]] : [];
+		})
+	);
+}
+
+/** A cell of the fixed table of compounds. */
+function ofCompound(evaluation: Evaluation, compound: string, column: string): number {
+	const row = evaluation.tables['compounds']?.rows.find(({ cells }) => cells['compound']?.text === compound);
+	return row?.cells[column]?.value ?? NaN;
+}
+
+/** Agreement to this many significant digits. */
+function expectDigits(found: number | undefined, expected: number, digits: number): void {
+	expect(Math.abs((found ?? NaN) / expected - 1)).toBeLessThan(0.5 * 10 ** -digits);
+}
+
+/** The same session with the temperature of each reading made anew. */
+function withCurve(session: Session, curve: (minutes: number) => number): Session {
+	const temperatures = (session.tables['temperatures'] ?? []).map((row) => ({
+		...row,
+		T: String(curve(Number(row['t'])))
+	}));
+	return { ...session, tables: { ...session.tables, temperatures } };
+}
+
+const plain: Curve = {
+	rise: 2.62,
+	lag: 0.9,
+	cooling: 0.0022,
+	jacket: 25,
+	stirring: 0.0006,
+	start: 23.2,
+	firing: 6
+};
+
+describe('molar masses and the count of gas', () => {
+	const evaluation = work(exact());
+
+	it('come from the formulas', () => {
+		// CIAAW 2021 abridged atomic weights, Prohaska et al. 2022: C 12.011, H 1.0080, O 15.999
+		expect(ofCompound(evaluation, 'naphthalene', 'M_c')).toBeCloseTo(128.174, 9);
+		expect(ofCompound(evaluation, 'benzoic acid', 'M_c')).toBeCloseTo(122.123, 9);
+		expect(ofCompound(evaluation, 'naphthalene', 'nu_O2')).toBe(12);
+		expect(ofCompound(evaluation, 'naphthalene', 'dn_g')).toBe(-2);
+		expect(ofCompound(evaluation, 'benzoic acid', 'dn_g')).toBe(-0.5);
+	});
+
+	it('make -4.958 kJ/mol of volume work for naphthalene', () => {
+		expect(ofCompound(evaluation, 'naphthalene', 'pV_term')).toBeCloseTo(-4.958, 3);
+		expectDigits(ofCompound(evaluation, 'naphthalene', 'pV_term'), (-2 * gasConstant * 298.15) / 1000, 12);
+	});
+});
+
+describe('a session without noise', () => {
+	it('returns what went in where nothing is exchanged with the jacket', () => {
+		// what is left is the end of the rise, exp(-12/0.9) of it, that the main period does not see
+		const evaluation = work(exact({ cooling: 0, stirring: 0 }));
+		expectDigits(value(evaluation, 'C_cal'), truth.heatCapacity, 5);
+		expectDigits(value(evaluation, 'U_std.naphthalene'), -truth.molarEnergy / 1000, 9);
+		const enthalpy = -truth.molarEnergy / 1000 - (2 * gasConstant * 298.15) / 1000;
+		expectDigits(value(evaluation, 'H_c.naphthalene'), enthalpy, 9);
+		// a rise at once leaves nothing: the digits of the arithmetic
+		const sudden = work(exact({ cooling: 0, stirring: 0, lag: 0.1 }));
+		expectDigits(value(sudden, 'C_cal'), truth.heatCapacity, 10);
+		expectDigits(value(sudden, 'U_std.naphthalene'), -truth.molarEnergy / 1000, 10);
+	});
+
+	it('returns them within the bias of the correction where there is exchange', () => {
+		const evaluation = work(exact());
+		const bias = 0.1 / 2390;
+		expect(Math.abs(value(evaluation, 'C_cal') / truth.heatCapacity - 1)).toBeLessThan(bias);
+		// the bias is common to both compounds and drops out all but a few parts in a million
+		expect(Math.abs((value(evaluation, 'U_std.naphthalene') * 1000) / -truth.molarEnergy - 1)).toBeLessThan(
+			3e-6
+		);
+		expect(value(evaluation, 'H_c.naphthalene')).toBeCloseTo(-5156.27, 2);
+	});
+
+	it('finds 40.212 kJ/g in the bomb and 40.190 in the standard state', () => {
+		const evaluation = work(exact());
+		for (const energy of Object.values(ofRuns(evaluation, 'e_bomb')))
+			expect(energy / 1000).toBeCloseTo(40.212, 3);
+		for (const energy of Object.values(ofRuns(evaluation, 'e_std')))
+			expect(energy / 1000).toBeCloseTo(40.19, 3);
+	});
+
+	it('finds the cooling constant of the jacket', () => {
+		const found = Object.values(ofRuns(work(exact()), 'k_loss'));
+		expect(found).toHaveLength(6);
+		for (const constant of found) expect(constant).toBeCloseTo(0.0022, 6);
+	});
+});
+
+describe('the corrected rise', () => {
+	const rises = (rise: number) => {
+		const evaluation = work(withCurve(exact(), temperature({ ...plain, rise })));
+		return {
+			regnault: ofRuns(evaluation, 'dT')['B1'] ?? NaN,
+			dickinson: ofRuns(evaluation, 'dT_D')['B1'] ?? NaN
+		};
+	};
+
+	it('is 0.1 to 0.4 mK too small by either method for rises of 2.62 and 2.39 K', () => {
+		for (const rise of [2.62, 2.39]) {
+			const { regnault, dickinson } = rises(rise);
+			for (const found of [regnault, dickinson]) {
+				expect(found - rise).toBeLessThan(-0.05e-3);
+				expect(found - rise).toBeGreaterThan(-0.4e-3);
+			}
+			expect(Math.abs(regnault - dickinson)).toBeLessThan(0.2e-3);
+		}
+	});
+
+	it('has equal areas before and after the time of Dickinson', () => {
+		const curve = temperature(plain);
+		const evaluation = work(withCurve(exact(), curve));
+		const [time, before, after] = ['t_d', 'T_b', 'T_e'].map((name) => ofRuns(evaluation, name)['B1'] ?? NaN);
+		const area = (from: number, to: number, height: (kelvins: number) => number) => {
+			const steps = 20_000;
+			let total = 0;
+			for (let i = 0; i < steps; i += 1)
+				total += height(curve(from + ((i + 0.5) * (to - from)) / steps) + 273.15);
+			return (total * (to - from)) / steps;
+		};
+		const early = area(6, time ?? NaN, (kelvins) => kelvins - (before ?? NaN));
+		const late = area(time ?? NaN, 18, (kelvins) => (after ?? NaN) - kelvins);
+		// the trapezoids of quarter minutes against the fine sum
+		expect(early / late).toBeCloseTo(1, 1);
+		expect(Math.abs(early - late)).toBeLessThan(0.02);
+	});
+
+	it('loses 15 mK, 0.6 %, where mixing is slow and the main period is cut at 8 min', () => {
+		const session = exact({ main: 8, late: 8 });
+		const evaluation = work(withCurve(session, temperature({ ...plain, lag: 1.5 })));
+		const lost = (ofRuns(evaluation, 'dT')['B1'] ?? NaN) - 2.62;
+		expect(lost).toBeCloseTo(-0.015, 3);
+		expect(lost / 2.62).toBeCloseTo(-0.006, 3);
+		expect(evaluation.problems.map(({ code }) => code)).toContain('curved-after-period');
+	});
+});
+
+describe('mass basis', () => {
+	const workings = (change: (session: Session) => void) => {
+		const session = exact();
+		change(session);
+		return work(session);
+	};
+
+	it('reads 26454 J/g for a mass in air where the certificate reads 26434 in vacuum', () => {
+		// NIST certificate SRM 39j, and a supplier's certificate that quotes it for weighing in air
+		const runs = work(exact()).tables['runs']?.rows ?? [];
+		const cells = runs.find((row) => row.cells['run']?.text === 'B1')?.cells;
+		expect(((cells?.['m_vac']?.value ?? NaN) / (cells?.['m_s']?.value ?? NaN)) * 26434).toBeCloseTo(26454, 0);
+	});
+
+	it('loses 0.08 and 0.09 % in the masses that are called vacuum but are not, and 0.014 % in the result', () => {
+		const honest = value(work(exact()), 'U_std.naphthalene');
+		const careless = workings(({ tables }) => {
+			for (const row of tables['runs'] ?? []) row['mass_basis'] = 'vacuum';
+		});
+		expect((value(careless, 'U_std.naphthalene') / honest - 1) * 100).toBeCloseTo(0.014, 3);
+	});
+});
+
+describe('reduction to the standard state', () => {
+	const litres = 0.34;
+	const atmospheres = 30;
+
+	it('is 22 J/g, 0.055 %, for 0.6 g of naphthalene at 30 atm in 0.34 L', () => {
+		const naphthalene = { grams: 0.6, molarMass: 128.174, carbon: 10, hydrogen: 8, oxygen: 0 };
+		const found = reduction({ ...naphthalene, litres, atmospheres });
+		expect(found).toBeCloseTo(22, 0);
+		expect((found / 40212) * 100).toBeCloseTo(0.055, 3);
+	});
+
+	it('is 20 J/g for benzoic acid, where 26434 and the standard-state 26413 ask for 21', () => {
+		const benzoic = { grams: 1, molarMass: 122.123, carbon: 7, hydrogen: 6, oxygen: 2 };
+		const found = reduction({ ...benzoic, litres, atmospheres });
+		expect(found).toBeCloseTo(20, 0);
+		expect(Math.abs(found - 21)).toBeLessThan(0.0003 * 26434);
+	});
+
+	it('is a result of its own: 2.8 kJ/mol of naphthalene, with 0.03 % as its uncertainty', () => {
+		const evaluation = work(exact());
+		const found = evaluation.quantities['reduction.naphthalene'];
+		expect(found?.value).toBeCloseTo(2.8, 1);
+		expect(((found?.standardUncertainty ?? NaN) / 5154) * 100).toBeCloseTo(0.03, 2);
+	});
+
+	it('brings the certificate to the published enthalpy of benzoic acid', () => {
+		// -3226.87 ± 0.18 kJ/mol, Mosselman and Dekker 1969, as listed in the NIST Chemistry WebBook (C65850);
+		// -3226.86 from CRC enthalpies of formation
+		const { comparisons, quantities } = work(exact());
+		expect(comparisons['H_cert.benzoic-acid']).toMatchObject({ verdict: 'compatible' });
+		expect(quantities['H_cert.benzoic-acid']?.value).toBeCloseTo(-3226.9, 0);
+	});
+});
+
+describe('what is shared', () => {
+	it('drops the thermometer’s slope out of the result and keeps it in the heat capacity', () => {
+		const { quantities } = work(simulate(222));
+		const part = (name: string) =>
+			Math.abs(quantities[name]?.budget.find(({ source }) => source === 'thermometer')?.contribution ?? 0) /
+			Math.abs(quantities[name]?.value ?? NaN);
+		expect(part('C_cal')).toBeCloseTo(0.001, 6);
+		expect(part('U_std.naphthalene')).toBeLessThan(1e-9);
+	});
+
+	it('does so when every temperature is read by a thermometer whose slope is 0.1 % off', () => {
+		const stretched = withGain(exact(), 1.001);
+		const [right, off] = [work(exact()), work(stretched)];
+		expect(value(off, 'C_cal') / value(right, 'C_cal')).toBeCloseTo(1 / 1.001, 6);
+		expectDigits(value(off, 'U_std.naphthalene'), value(right, 'U_std.naphthalene'), 7);
+	});
+
+	it('keeps the one deviation of the calorimeter in the result, undivided', () => {
+		const { quantities } = work(simulate(222));
+		const budget = quantities['U_std.naphthalene']?.budget ?? [];
+		const part = (name: string) =>
+			Math.abs(budget.find(({ source }) => source.startsWith(name))?.contribution ?? NaN);
+		const capacity = quantities['C_cal'];
+		const own = capacity?.budget.find(({ source }) => source.startsWith('C_cal'))?.contribution ?? NaN;
+		const relative = Math.abs(own / (capacity?.value ?? NaN));
+		// a per cent more than the relative deviation, because wire and acid do not scale with it
+		expect(part('C_cal') / Math.abs(value(work(simulate(222)), 'U_std.naphthalene')) / relative).toBeCloseTo(
+			1,
+			1
+		);
+	});
+});
+
+function withGain(session: Session, gain: number): Session {
+	const temperatures = (session.tables['temperatures'] ?? []).map((row) => ({
+		...row,
+		T: String(Number(row['T']) * gain)
+	}));
+	return { ...session, tables: { ...session.tables, temperatures } };
+}
+
+describe('the example', () => {
+	const read = (name: string) => {
+		const columns = worksheet.tables.find((table) => table.name === name)?.columns ?? [];
+		const found = readTable(exampleText('combustion', `${name}.csv`), columns);
+		expect(found.problems).toEqual([]);
+		return found.rows.map((row, i) => ({ id: `${name}-${i + 1}`, status: 'used' as const, ...row }));
+	};
+	const readings: Readings = {
+		parameters: JSON.parse(exampleText('combustion', 'parameters.json')) as Record<string, string>,
+		tables: { runs: read('runs'), temperatures: read('temperatures') }
+	};
+	const evaluation = evaluate(worksheet, readings);
+
+	it('has no problem and asks for nothing', () => {
+		expect(evaluation.problems).toEqual([]);
+	});
+
+	it('finds the enthalpy of naphthalene to about 5 kJ/mol with some four degrees of freedom', () => {
+		const enthalpy = evaluation.quantities['H_c.naphthalene'];
+		expect(enthalpy?.standardUncertainty).toBeGreaterThan(2);
+		expect(enthalpy?.standardUncertainty).toBeLessThan(9);
+		expect(enthalpy?.degreesOfFreedom).toBeGreaterThan(2);
+		expect(enthalpy?.degreesOfFreedom).toBeLessThan(6);
+		expect(Math.abs((enthalpy?.value ?? NaN) + 5156.3)).toBeLessThan(enthalpy?.expanded95 ?? 0);
+		expect(evaluation.comparisons['H_c.naphthalene']).toMatchObject({ verdict: 'compatible' });
+	});
+
+	it('shows six temperature curves, each with its lines', () => {
+		expect(evaluation.figures['temperatures']?.series).toHaveLength(6);
+		expect(evaluation.figures['fore']?.series).toHaveLength(6);
+		expect(evaluation.figures['late']?.series).toHaveLength(6);
+	});
+});

@@ -1,0 +1,203 @@
+import { describe, expect, it } from 'vitest';
+import { evaluate, readTable, type Evaluation, type Readings } from '$lib/worksheets';
+import { exampleText, readingsOf, worksheetOf, type Session } from './simulated-session';
+
+interface Simulation {
+	simulate: (
+		seed: number,
+		options?: {
+			gamma?: Record<string, number>;
+			trials?: number;
+			noise?: number;
+			digits?: boolean;
+		}
+	) => Session;
+	ideal: Record<string, number>;
+	leaking: Record<string, number>;
+}
+const { simulate, ideal, leaking } =
+	(await import('../../templates/heat-capacity-ratio/simulate.mjs')) as Simulation;
+
+const worksheet = worksheetOf('heat-capacity-ratio');
+/** Molar gas constant, CODATA 2018, as the worksheet states it. */
+const gasConstant = 8.314462618;
+
+function exactSession(gamma: Record<string, number> = ideal): Session {
+	return simulate(1, { gamma, noise: 0, digits: false });
+}
+
+function work(session: Session): Evaluation {
+	return evaluate(worksheet, readingsOf(session));
+}
+
+function value(evaluation: Evaluation, name: string): number {
+	return evaluation.quantities[name]?.value ?? NaN;
+}
+
+/** Agreement to this many significant digits. */
+function expectDigits(found: number | undefined, expected: number, digits: number): void {
+	expect(Math.abs((found ?? NaN) / expected - 1)).toBeLessThan(0.5 * 10 ** -digits);
+}
+
+describe('a session without noise', () => {
+	const evaluation = work(exactSession());
+
+	it('returns the ratios that went in, to twelve digits', () => {
+		expectDigits(value(evaluation, 'gamma.argon'), 5 / 3, 12);
+		expectDigits(value(evaluation, 'gamma.nitrogen'), 1.3998, 12);
+	});
+
+	it('returns the heat capacities that belong to them', () => {
+		for (const gas of ['argon', 'nitrogen']) {
+			const ratio = ideal[gas] ?? NaN;
+			expectDigits(value(evaluation, `C_V.${gas}`), gasConstant / (ratio - 1), 11);
+			expectDigits(value(evaluation, `C_p.${gas}`), (ratio * gasConstant) / (ratio - 1), 11);
+		}
+	});
+
+	it('finds 12.472 and 20.786 J/(mol K) for argon', () => {
+		// 3/2 R and 5/2 R; 20.786 also NIST Chemistry WebBook (SRD 69), Shomate coefficients of argon
+		expect(value(evaluation, 'C_V.argon')).toBeCloseTo(12.472, 3);
+		expect(value(evaluation, 'C_p.argon')).toBeCloseTo(20.786, 3);
+	});
+
+	it('grows the uncertainty of the ratio by R/(gamma - 1)^2', () => {
+		const noisy = work(simulate(314));
+		for (const gas of ['argon', 'nitrogen']) {
+			const ratio = noisy.quantities[`gamma.${gas}`];
+			const capacity = noisy.quantities[`C_V.${gas}`];
+			const expected = (gasConstant * (ratio?.standardUncertainty ?? NaN)) / ((ratio?.value ?? NaN) - 1) ** 2;
+			expectDigits(capacity?.standardUncertainty ?? NaN, expected, 9);
+		}
+	});
+});
+
+describe('what the literature says', () => {
+	const at = (celsius: string) => {
+		const session = exactSession();
+		session.parameters['t_room'] = celsius;
+		return work(session);
+	};
+
+	/**
+	 * Ideal-gas heat capacity of nitrogen at constant pressure, J/(mol K), as rigid rotor and one harmonic vibration with
+	 * theta = 3393 K: computed beside the NIST and JANAF tables for the temperatures given here, numbers only.
+	 */
+	const rotorAndVibration = [
+		['15.0', 29.10948],
+		['20.0', 29.11108],
+		['25.0', 29.1129],
+		['30.0', 29.11495]
+	] as const;
+
+	it('has nitrogen at constant pressure as a rotor with one vibration', () => {
+		for (const [celsius, expected] of rotorAndVibration) {
+			const evaluation = at(celsius);
+			const capacity = (7 / 2) * gasConstant + value(evaluation, 'C_vib');
+			expect(capacity).toBeCloseTo(expected, 4);
+			// NIST Chemistry WebBook (SRD 69), Shomate: 29.119 to 29.127 in this range; CRC Handbook 29.1 at 298 K
+			expect(capacity).toBeCloseTo(29.12, 1);
+		}
+	});
+
+	it('compares nitrogen with 1.3998 at 298 K and argon with 5/3', () => {
+		const { comparisons } = at('25.0');
+		expect(comparisons['gamma.nitrogen']?.reference.value).toBeCloseTo(1.3998, 4);
+		expect(comparisons['gamma.argon']?.reference.value).toBeCloseTo(5 / 3, 12);
+		expect(comparisons['C_V.argon']?.reference.value).toBeCloseTo(12.472, 3);
+		expect(comparisons['C_p.argon']?.reference.value).toBe(20.786);
+		expect(comparisons['C_p.nitrogen']?.reference.value).toBe(29.12);
+	});
+
+	it('goes from 7/5 without the vibration to 9/7 with all of it', () => {
+		expect(at('-250').comparisons['gamma.nitrogen']?.reference.value).toBeCloseTo(7 / 5, 12);
+		expect(at('10000000').comparisons['gamma.nitrogen']?.reference.value).toBeCloseTo(9 / 7, 6);
+	});
+});
+
+describe('sensitivities at 1.398', () => {
+	// one trial of nitrogen from 600 mm; the mean of two equal ones
+	const session = () => {
+		const two = simulate(1, { gamma: { argon: 5 / 3, nitrogen: 1.398 }, trials: 1, noise: 0, digits: false });
+		const rows = two.tables['trials'] ?? [];
+		return { ...two, tables: { trials: [...rows, ...rows] } };
+	};
+	const moved = (change: (session: Session) => void) => {
+		const changed = session();
+		change(changed);
+		return value(work(changed), 'gamma.nitrogen') - value(work(session()), 'gamma.nitrogen');
+	};
+	const inTrials = (column: string, by: number) => (changed: Session) => {
+		changed.tables['trials'] = (changed.tables['trials'] ?? []).map((row) => ({
+			...row,
+			[column]: String(Number(row[column]) + by)
+		}));
+	};
+	const inParameter = (name: string, by: number) => (changed: Session) => {
+		changed.parameters[name] = String(Number(changed.parameters[name]) + by);
+	};
+
+	it('are -0.0009 for a millimetre of h1, 0.0033 of h3, -0.0001 for a kilopascal', () => {
+		expect(moved(inTrials('h_1', 1))).toBeCloseTo(-0.0009, 4);
+		expect(moved(inTrials('h_3', 1))).toBeCloseTo(0.0033, 4);
+		expect(moved(inParameter('p_b', 1))).toBeCloseTo(-0.0001, 4);
+		// a zero read too high lowers both heights
+		expect(moved(inParameter('z', 1))).toBeCloseTo(0.0009 - 0.0033, 4);
+	});
+
+	it('are what the budget propagates', () => {
+		const { budget } = work(session()).quantities['gamma.nitrogen'] ?? { budget: [] };
+		const part = (source: string) =>
+			Math.abs(budget.find((line) => line.source === source)?.contribution ?? NaN);
+		expect(part('zero')).toBeCloseTo(0.3 * Math.abs(moved(inParameter('z', 0.001)) / 0.001), 6);
+		expect(part('barometer')).toBeCloseTo(0.1 * Math.abs(moved(inParameter('p_b', 0.001)) / 0.001), 7);
+	});
+
+	it('hardly knows density and free fall', () => {
+		expect(Math.abs(moved(inParameter('rho_20', 10)))).toBeLessThan(2e-4);
+	});
+});
+
+describe('the example', () => {
+	const csv = exampleText('heat-capacity-ratio', 'trials.csv');
+	const parameters = JSON.parse(exampleText('heat-capacity-ratio', 'parameters.json')) as Record<
+		string,
+		string
+	>;
+	const columns = worksheet.tables.find(({ name }) => name === 'trials')?.columns ?? [];
+	const table = readTable(csv, columns);
+	const readings: Readings = {
+		parameters,
+		tables: { trials: table.rows.map((row, i) => ({ id: `row-${i + 1}`, status: 'used', ...row })) }
+	};
+	const evaluation = evaluate(worksheet, readings);
+
+	it('is what the script writes', () => {
+		expect(table.problems).toEqual([]);
+		expect(table.rows.map(({ cells }) => cells)).toEqual(
+			simulate(314).tables['trials']?.map(
+				(row) => expect.objectContaining({ h_1: row['h_1'], h_3: row['h_3'] }) as object
+			)
+		);
+	});
+
+	it('has no problem and asks for nothing', () => {
+		expect(evaluation.problems).toEqual([]);
+	});
+
+	it('shows the heat leak: 1.64 for argon and 1.385 for nitrogen, both not compatible', () => {
+		for (const gas of ['argon', 'nitrogen']) {
+			const ratio = evaluation.quantities[`gamma.${gas}`];
+			const off = Math.abs((ratio?.value ?? NaN) - (leaking[gas] ?? NaN));
+			expect(off).toBeLessThan(ratio?.expanded95 ?? 0);
+			expect(ratio?.degreesOfFreedom).toBeGreaterThan(4.9);
+			expect(evaluation.comparisons[`gamma.${gas}`]).toMatchObject({ verdict: 'not compatible' });
+			expect(evaluation.comparisons[`gamma.${gas}`]?.difference).toBeLessThan(0);
+		}
+	});
+
+	it('has a sample calculation of a trial and of each gas', () => {
+		expect(evaluation.workings['gamma_trial']?.symbolic).toContain('\\ln');
+		expect(evaluation.workings['gamma.argon'] ?? evaluation.workings['gamma']).toBeDefined();
+	});
+});

@@ -2,6 +2,7 @@ import { sql } from 'drizzle-orm';
 import { v7 as uuidv7 } from 'uuid';
 import type { Act, Viewer } from '../src/lib/server/auth';
 import { database, schema } from '../src/lib/server/db';
+import { Refusal } from '../src/lib/server/errors';
 import * as experiments from '../src/lib/server/experiments';
 
 /** What a test needs of a course, made with few words. Everything is random enough not to collide. */
@@ -10,6 +11,16 @@ let counter = 0;
 const next = () => `${Date.now().toString(36)}${(counter++).toString(36)}`;
 
 export const act = (viewer: Viewer, extra: Partial<Act> = {}): Act => ({ viewer, ...extra });
+
+/** What a verb refused with; anything else that it does fails the test. */
+export async function refusalOf(promise: Promise<unknown>): Promise<Refusal> {
+	const thrown: unknown = await promise.then(
+		() => undefined,
+		(reason: unknown) => reason
+	);
+	if (!(thrown instanceof Refusal)) throw new Error('expected a refusal', { cause: thrown });
+	return thrown;
+}
 
 export async function makePerson(
 	name = 'Ada Quill',

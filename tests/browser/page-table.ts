@@ -1,9 +1,9 @@
-import type { Persona, Scene, Stage } from './permission-table';
+import { ofCourse, type Answers, type Scene, type Stage } from './permission-table';
 
 export interface PageRow {
 	stage: Stage;
 	params?: (scene: Scene) => Record<string, string>;
-	answers: Partial<Record<Persona, number>> & { else: number };
+	answers: Answers;
 }
 
 /** Signed out: sent to the door. Signed in and not yours: not here. */
@@ -11,37 +11,16 @@ const closed = { nobody: 303, else: 404 } as const;
 const open = { else: 200 } as const;
 const course = (s: Scene) => ({ course: s.slug });
 const work = (s: Scene) => ({ course: s.slug, work: s.workId });
-const everyMember = {
-	...closed,
-	student: 200,
-	mate: 200,
-	otherStudent: 200,
-	grader: 200,
-	otherGrader: 200,
-	instructor: 200,
-	administrator: 200
-};
-const instructorOnly = {
-	...closed,
-	student: 403,
-	mate: 403,
-	otherStudent: 403,
-	grader: 403,
-	otherGrader: 403,
-	administrator: 403,
-	instructor: 200
-};
-const graderOnly = {
-	...closed,
-	student: 403,
-	mate: 403,
-	otherStudent: 403,
-	grader: 200,
-	otherGrader: 200,
-	administrator: 403,
-	instructor: 403
-};
+const everyMember = ofCourse(closed, 200);
+const instructorOnly = ofCourse(closed, 403, { instructor: 200 });
+const gradersOnly = ofCourse(closed, 403, { grader: 200, otherGrader: 200 });
 const own = { ...closed, student: 200, mate: 200 };
+/** of one work: its team writes, staff of the course look on or are told that it is not theirs */
+const ofWork = (staff: number) => ({
+	stage: 'draft' as const,
+	params: work,
+	answers: { ...own, grader: staff, instructor: staff }
+});
 
 /** Route folder of every page -> who gets which answer. */
 export const pageRows: Record<string, PageRow> = {
@@ -56,33 +35,17 @@ export const pageRows: Record<string, PageRow> = {
 	},
 	'/(desk)/c/[course]/returning': { stage: 'marked', params: course, answers: instructorOnly },
 	'/(desk)/c/[course]/spread': { stage: 'marked', params: course, answers: instructorOnly },
-	'/(desk)/c/[course]/sitting': { stage: 'handed in', params: course, answers: graderOnly },
+	'/(desk)/c/[course]/sitting': { stage: 'handed in', params: course, answers: gradersOnly },
 	'/(desk)/c/[course]/sitting/[alias]/[sheet]': {
 		stage: 'handed in',
 		params: (s) => ({ course: s.slug, alias: s.alias, sheet: 'report' }),
 		// An alias tells nobody but the grader anything, not even whether it is one.
 		answers: { ...closed, grader: 200 }
 	},
-	'/(desk)/c/[course]/w/[work]/bench': {
-		stage: 'draft',
-		params: work,
-		answers: { ...own, grader: 200, instructor: 200 }
-	},
-	'/(desk)/c/[course]/w/[work]/workings': {
-		stage: 'draft',
-		params: work,
-		answers: { ...own, grader: 200, instructor: 200 }
-	},
-	'/(desk)/c/[course]/w/[work]/report': {
-		stage: 'draft',
-		params: work,
-		answers: { ...own, grader: 403, instructor: 403 }
-	},
-	'/(desk)/c/[course]/w/[work]/hand-in': {
-		stage: 'draft',
-		params: work,
-		answers: { ...own, grader: 403, instructor: 403 }
-	},
+	'/(desk)/c/[course]/w/[work]/bench': ofWork(200),
+	'/(desk)/c/[course]/w/[work]/workings': ofWork(200),
+	'/(desk)/c/[course]/w/[work]/report': ofWork(403),
+	'/(desk)/c/[course]/w/[work]/hand-in': ofWork(403),
 	'/(desk)/c/[course]/w/[work]/returned': {
 		stage: 'returned',
 		params: work,

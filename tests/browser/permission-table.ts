@@ -56,34 +56,37 @@ export interface Row {
 		raw?: { type: string; text: string };
 		revision?: number;
 	};
-	/** status for each; `else` for those not named */
-	answers: Partial<Record<Persona, number>> & { else: number };
+	answers: Answers;
 }
+/** Status for each persona; `else` for those not named. */
+export type Answers = Partial<Record<Persona, number>> & { else: number };
+
+/**
+ * The same answer for everyone who sees that there is a course, but for those named in `over`. The administrator is one of
+ * them: somebody has to invite the first people into it.
+ */
+export const ofCourse = (
+	closed: Answers,
+	status: number,
+	over: Partial<Record<Persona, number>> = {}
+): Answers => ({
+	...closed,
+	student: status,
+	mate: status,
+	otherStudent: status,
+	grader: status,
+	otherGrader: status,
+	instructor: status,
+	administrator: status,
+	...over
+});
 
 /** Not signed in is always said as such; nothing is told of what is there. */
 const closed = { nobody: 401, else: 404 } as const;
-const members = {
-	...closed,
-	student: 200,
-	mate: 200,
-	otherStudent: 200,
-	grader: 200,
-	otherGrader: 200,
-	instructor: 200,
-	// sees that there is a course, to invite into it
-	administrator: 200
-};
+const members = ofCourse(closed, 200);
 /** members see the course, so that they are told "not yours"; everyone else that it is not there */
-const instructorOnly = (status = 200) => ({
-	...closed,
-	student: 403,
-	mate: 403,
-	otherStudent: 403,
-	grader: 403,
-	otherGrader: 403,
-	administrator: 403,
-	instructor: status
-});
+const instructorOnly = (status = 200) => ofCourse(closed, 403, { instructor: status });
+const gradersOnly = ofCourse(closed, 403, { grader: 200, otherGrader: 200 });
 /** inviting is an administrator's too: somebody has to name the first instructor */
 const inviters = (status = 200) => ({ ...instructorOnly(status), administrator: status });
 /** by report: only its author and the section's grader know that it is there */
@@ -273,16 +276,7 @@ export const apiRows: Record<string, Row> = {
 	'POST /sittings': {
 		stage: 'handed in',
 		call: (s) => ({ body: { assignment: s.assignmentId } }),
-		answers: {
-			...closed,
-			student: 403,
-			mate: 403,
-			otherStudent: 403,
-			grader: 200,
-			otherGrader: 200,
-			instructor: 403,
-			administrator: 404
-		}
+		answers: { ...gradersOnly, administrator: 404 }
 	},
 	'GET /sittings/{sitting}': {
 		stage: 'handed in',
@@ -345,30 +339,12 @@ export const apiRows: Record<string, Row> = {
 	'GET /courses/{course}/kept-remarks': {
 		stage: 'draft',
 		call: (s) => ({ params: { course: s.slug } }),
-		answers: {
-			...closed,
-			student: 403,
-			mate: 403,
-			otherStudent: 403,
-			grader: 200,
-			otherGrader: 200,
-			instructor: 403,
-			administrator: 403
-		}
+		answers: gradersOnly
 	},
 	'POST /courses/{course}/kept-remarks': {
 		stage: 'draft',
 		call: (s) => ({ params: { course: s.slug }, body: { kind: 'note', body: 'Name the source.' } }),
-		answers: {
-			...closed,
-			student: 403,
-			mate: 403,
-			otherStudent: 403,
-			grader: 200,
-			otherGrader: 200,
-			instructor: 403,
-			administrator: 403
-		}
+		answers: gradersOnly
 	},
 	'POST /kept-remarks/{kept}/uses': {
 		stage: 'draft',

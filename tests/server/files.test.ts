@@ -2,10 +2,9 @@ import { createHash } from 'node:crypto';
 import { sql } from 'drizzle-orm';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { closeDatabase, database } from '../../src/lib/server/db';
-import { Refusal } from '../../src/lib/server/errors';
 import * as files from '../../src/lib/server/files';
 import * as readings from '../../src/lib/server/readings';
-import { act, makeCourse, type MadeCourse } from '../factories';
+import { act, makeCourse, refusalOf, type MadeCourse } from '../factories';
 import { freshDatabase, type FreshDatabase } from '../harness';
 
 let fresh: FreshDatabase;
@@ -32,14 +31,6 @@ const take = (
 		name: over.name ?? 'run.csv',
 		body: bodyOf(bytes)
 	});
-const refusalOf = async (promise: Promise<unknown>): Promise<Refusal> => {
-	const problem: unknown = await promise.then(
-		() => null,
-		(thrown: unknown) => thrown
-	);
-	if (!(problem instanceof Refusal)) throw new Error(`not refused: ${String(problem)}`);
-	return problem;
-};
 const cellsOf = (taken: readings.TakenFile) => taken.table.rows.map(({ cells }) => [cells['t'], cells['p']]);
 const bytesOf = async (fileId: string, viewer = course.student) => {
 	const chunks: Buffer[] = [];

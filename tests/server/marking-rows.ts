@@ -2,10 +2,12 @@ import { createHash, randomInt } from 'node:crypto';
 import { eq } from 'drizzle-orm';
 import { v7 as uuidv7 } from 'uuid';
 import { engineVersion, evaluate, type Worksheet } from '../../src/lib/worksheets';
+import type { MarkingState } from '../../src/lib/contracts/marking';
 import type { Viewer } from '../../src/lib/server/auth';
 import { database, schema } from '../../src/lib/server/db';
+import * as marking from '../../src/lib/server/marking';
 import { storeSnapshot } from '../../src/lib/server/reports/store-snapshot';
-import { addToTeam, join, makePerson } from '../factories';
+import { act, addToTeam, join, makePerson } from '../factories';
 
 // Rows of handed-in reports, made without the areas that lead up to them, with a rubric whose points are not round.
 
@@ -205,6 +207,26 @@ export async function handedIn(
 		await tx.update(schema.reports).set({ countedSnapshotId: snapshot }).where(eq(schema.reports.id, report));
 	});
 	return { author, mate, report, snapshot, alias, work, team, receivedAt };
+}
+
+/** Begins a marking, sets method, uncertainty and writing to their levels, and returns the newest state. */
+export async function setLevels(
+	course: MarkingCourse,
+	viewer: Viewer,
+	alias: string,
+	levels: readonly number[]
+): Promise<MarkingState> {
+	let state = await marking.openMarking(act(viewer), { alias });
+	const { method, uncertainty, writing } = course.criteria;
+	for (const [index, criterion] of [method, uncertainty, writing].entries()) {
+		state = await marking.setLevel(act(viewer, { revision: state.revision }), {
+			marking: state.id,
+			criterion,
+			level: levels[index] ?? 0,
+			reason: ''
+		});
+	}
+	return state;
 }
 
 export const anchorOn = (exact: string, start: number) => ({

@@ -1,52 +1,28 @@
 import { sql } from 'drizzle-orm';
-import postgres from 'postgres';
 import { v7 as uuidv7 } from 'uuid';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { describe, expect, it } from 'vitest';
 import type { Viewer } from '../../src/lib/server/auth';
-import { closeDatabase, database } from '../../src/lib/server/db';
-import { Refusal } from '../../src/lib/server/errors';
+import { database } from '../../src/lib/server/db';
+import type { Refusal } from '../../src/lib/server/errors';
 import * as marking from '../../src/lib/server/marking';
-import { act } from '../factories';
-import { freshDatabase, type FreshDatabase } from '../harness';
-import { anchorOn, handedIn, markingCourse, type HandedIn, type MarkingCourse } from './marking-rows';
+import { act, refusalOf } from '../factories';
+import {
+	anchorOn,
+	handedIn,
+	markingCourse,
+	setLevels,
+	type HandedIn,
+	type MarkingCourse
+} from './marking-rows';
+import { ownDatabase } from './own-database';
 
-let fresh: FreshDatabase;
-let owner: postgres.Sql;
-beforeAll(async () => {
-	fresh = await freshDatabase();
-	owner = postgres(fresh.ownerUrl, { max: 2, onnotice: () => undefined });
-});
-afterAll(async () => {
-	await owner.end();
-	await closeDatabase();
-	await fresh.drop();
-});
-
-async function refusalOf(promise: Promise<unknown>): Promise<Refusal> {
-	const thrown: unknown = await promise.then(
-		() => undefined,
-		(reason: unknown) => reason
-	);
-	if (!(thrown instanceof Refusal)) throw new Error('expected a refusal', { cause: thrown });
-	return thrown;
-}
+const owner = await ownDatabase();
 
 const begin = (viewer: Viewer, report: HandedIn) => marking.openMarking(act(viewer), { alias: report.alias });
 
 /** Sets every criterion to its level and returns the newest state. */
-async function markAll(course: MarkingCourse, viewer: Viewer, report: HandedIn, levels = [2, 1, 2]) {
-	let state = await begin(viewer, report);
-	const { method, uncertainty, writing } = course.criteria;
-	for (const [index, criterion] of [method, uncertainty, writing].entries()) {
-		state = await marking.setLevel(act(viewer, { revision: state.revision }), {
-			marking: state.id,
-			criterion,
-			level: levels[index] ?? 0,
-			reason: ''
-		});
-	}
-	return state;
-}
+const markAll = (course: MarkingCourse, viewer: Viewer, report: HandedIn, levels = [2, 1, 2]) =>
+	setLevels(course, viewer, report.alias, levels);
 
 describe('a sitting', () => {
 	it('holds the reports of the grader’s own lab sections, in an order that stays', async () => {

@@ -2,10 +2,9 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import * as Y from 'yjs';
 import { readReadings, seedReadings, writeReadings } from '../../src/lib/collab';
 import { closeDatabase, database } from '../../src/lib/server/db';
-import { Refusal } from '../../src/lib/server/errors';
 import * as readings from '../../src/lib/server/readings';
 import { evaluate, workingsFor, type Readings } from '../../src/lib/worksheets';
-import { makeCourse, type MadeCourse } from '../factories';
+import { makeCourse, refusalOf, type MadeCourse } from '../factories';
 import { freshDatabase, type FreshDatabase } from '../harness';
 
 /** Ten equal steps from 400 to 760 torr and the boiling temperatures of water there, computed from published saturation pressures. */
@@ -40,13 +39,7 @@ afterAll(async () => {
 	await fresh.drop();
 });
 
-const refusalOf = async (promise: Promise<unknown>) => {
-	const problem: unknown = await promise.then(
-		() => null,
-		(thrown: unknown) => thrown
-	);
-	return problem instanceof Refusal ? problem.kind : `not refused: ${String(problem)}`;
-};
+const refusedAs = async (promise: Promise<unknown>) => (await refusalOf(promise)).kind;
 
 describe('a bench', () => {
 	it('comes into being when it is first opened, once, however many open it', async () => {
@@ -61,9 +54,9 @@ describe('a bench', () => {
 
 	it('is not there for others', async () => {
 		for (const viewer of [course.stranger, course.otherStudent, course.otherGrader]) {
-			expect(await refusalOf(readings.openBench(viewer, course.workId))).toBe('not-found');
-			expect(await refusalOf(readings.evaluation(viewer, course.workId))).toBe('not-found');
-			expect(await refusalOf(readings.storedReadings(viewer, course.workId))).toBe('not-found');
+			expect(await refusedAs(readings.openBench(viewer, course.workId))).toBe('not-found');
+			expect(await refusedAs(readings.evaluation(viewer, course.workId))).toBe('not-found');
+			expect(await refusedAs(readings.storedReadings(viewer, course.workId))).toBe('not-found');
 		}
 	});
 });
@@ -108,8 +101,8 @@ describe('a document', () => {
 			epoch: 1,
 			canWrite: true
 		});
-		expect(await refusalOf(readings.openDocument(course.stranger, document.id))).toBe('not-found');
-		expect(await refusalOf(readings.versionsOf(course.stranger, document.id, { limit: 10 }))).toBe(
+		expect(await refusedAs(readings.openDocument(course.stranger, document.id))).toBe('not-found');
+		expect(await refusedAs(readings.versionsOf(course.stranger, document.id, { limit: 10 }))).toBe(
 			'not-found'
 		);
 	});

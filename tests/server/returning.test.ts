@@ -1,51 +1,30 @@
 import { randomUUID } from 'node:crypto';
-import postgres from 'postgres';
 import { v7 as uuidv7 } from 'uuid';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { describe, expect, it } from 'vitest';
 import type { Viewer } from '../../src/lib/server/auth';
-import { closeDatabase, requestDigest } from '../../src/lib/server/db';
-import { Refusal } from '../../src/lib/server/errors';
+import { requestDigest } from '../../src/lib/server/db';
 import { letters } from '../../src/lib/server/mail';
 import * as marking from '../../src/lib/server/marking';
 import * as moderation from '../../src/lib/server/moderation';
-import { act } from '../factories';
-import { freshDatabase, type FreshDatabase } from '../harness';
-import { anchorOn, handedIn, markingCourse, type HandedIn, type MarkingCourse } from './marking-rows';
+import { act, refusalOf } from '../factories';
+import {
+	anchorOn,
+	handedIn,
+	markingCourse,
+	setLevels,
+	type HandedIn,
+	type MarkingCourse
+} from './marking-rows';
+import { ownDatabase } from './own-database';
 
-let fresh: FreshDatabase;
-let owner: postgres.Sql;
-beforeAll(async () => {
-	fresh = await freshDatabase();
-	owner = postgres(fresh.ownerUrl, { max: 2, onnotice: () => undefined });
-});
-afterAll(async () => {
-	await owner.end();
-	await closeDatabase();
-	await fresh.drop();
-});
-
-async function refusalOf(promise: Promise<unknown>): Promise<Refusal> {
-	const thrown: unknown = await promise.then(
-		() => undefined,
-		(reason: unknown) => reason
-	);
-	if (!(thrown instanceof Refusal)) throw new Error('expected a refusal', { cause: thrown });
-	return thrown;
-}
+const owner = await ownDatabase();
 
 const remarkOf = new Map<string, string>();
 
 /** Marks with levels 2, 1, 2 (3.25 + 2.5 + 2 = 7.75 of 11), one remark, and finishes unless said. */
 async function mark(course: MarkingCourse, report: HandedIn, finish = true) {
 	const as = (revision: number) => act(course.grader, { revision });
-	let state = await marking.openMarking(act(course.grader), { alias: report.alias });
-	const { method, uncertainty, writing } = course.criteria;
-	for (const [criterion, level] of [
-		[method, 2],
-		[uncertainty, 1],
-		[writing, 2]
-	] as const)
-		state = await marking.setLevel(as(state.revision), { marking: state.id, criterion, level, reason: '' });
+	let state = await setLevels(course, course.grader, report.alias, [2, 1, 2]);
 	const remark = uuidv7();
 	state = await marking.addRemark(as(state.revision), {
 		marking: state.id,

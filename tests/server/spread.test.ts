@@ -6,7 +6,14 @@ import * as moderation from '../../src/lib/server/moderation';
 import type { Viewer } from '../../src/lib/server/auth';
 import { act } from '../factories';
 import { freshDatabase, type FreshDatabase } from '../harness';
-import { handedIn, markingCourse, points, type HandedIn, type MarkingCourse } from './marking-rows';
+import {
+	handedIn,
+	markingCourse,
+	points,
+	setLevels,
+	type HandedIn,
+	type MarkingCourse
+} from './marking-rows';
 
 let fresh: FreshDatabase;
 let course: MarkingCourse;
@@ -22,15 +29,7 @@ const marked = [
 ] as const;
 
 async function mark(viewer: Viewer, report: HandedIn, levels: readonly number[], finish = true) {
-	let state = await marking.openMarking(act(viewer), { alias: report.alias });
-	const { method, uncertainty, writing } = course.criteria;
-	for (const [index, criterion] of [method, uncertainty, writing].entries())
-		state = await marking.setLevel(act(viewer, { revision: state.revision }), {
-			marking: state.id,
-			criterion,
-			level: levels[index] ?? 0,
-			reason: ''
-		});
+	const state = await setLevels(course, viewer, report.alias, levels);
 	if (finish) await marking.finishMarking(act(viewer, { revision: state.revision }), { marking: state.id });
 }
 

@@ -49,30 +49,53 @@ function normal(random) {
 	return radius * Math.cos(2 * Math.PI * random());
 }
 
+/** What the mercury column of a simulated run is like: constants as in template.yaml, from memory. */
+const mercury = { celsius: 25, expansion: 1.818e-4, scale: 1.84e-5 };
+
+/** Height in mm of a mercury column with a brass scale that stands for a pressure in torr. */
+function columnHeight(torr) {
+	const { celsius, expansion, scale } = mercury;
+	return (torr * pascalsPerTorr * (1 + expansion * celsius)) / (1 + scale * celsius) / 133.322387415;
+}
+
 /**
  * One run: ten pressures from 400 to 760 torr, read with noise of 0.1 K and 0.5 torr on a thermometer and a gauge
- * whose own offsets (0.2 K, 0.3 torr, standard deviations) are the same in every row.
+ * whose own offsets (0.2 K, 0.3 torr, standard deviations) are the same in every row. `instrument` tells what the
+ * pressure is read on: the electronic gauge, or a closed or open mercury column (offsets and noise in mm then).
  */
 export function simulate({
 	seed,
 	noiseKelvins = 0.1,
 	noiseTorr = 0.5,
 	thermometerKelvins = 0.2,
-	gaugeTorr = 0.3
+	gaugeTorr = 0.3,
+	barometerTorr = 0.3,
+	instrument = 'gauge',
+	rounded = true
 }) {
 	const random = uniform(seed);
+	const text = (value, decimals) => (rounded ? value.toFixed(decimals) : String(value));
 	const thermometer = thermometerKelvins * normal(random);
 	const gauge = gaugeTorr * normal(random);
-	const rows = Array.from({ length: 10 }, (_, i) => {
+	const readings = Array.from({ length: 10 }, (_, i) => {
 		const torr = 400 + 40 * i + 3 * (random() - 0.5);
 		const celsius = boilingTemperature(torr * pascalsPerTorr) - 273.15;
 		return {
-			t: (celsius + thermometer + noiseKelvins * normal(random)).toFixed(2),
-			p: (torr + gauge + noiseTorr * normal(random)).toFixed(1),
-			note: ''
+			torr,
+			t: text(celsius + thermometer + noiseKelvins * normal(random), 2),
+			deviation: gauge + noiseTorr * normal(random)
 		};
 	});
-	return { parameters: { p_b: (757 + 6 * (random() - 0.5)).toFixed(1) }, rows };
+	const room = 757 + 6 * (random() - 0.5);
+	const pressure = {
+		gauge: ({ torr, deviation }) => ({ p: text(torr + deviation, 1) }),
+		closed: ({ torr, deviation }) => ({ h_closed: text(columnHeight(torr) + deviation, 1) }),
+		open: ({ torr, deviation }) => ({ h_open: text(columnHeight(room - torr) + deviation, 1) })
+	}[instrument];
+	const rows = readings.map((reading) => ({ t: reading.t, ...pressure(reading), note: '' }));
+	if (instrument === 'gauge') return { parameters: { p_b: room.toFixed(1) }, rows };
+	const read = room + barometerTorr * normal(random);
+	return { parameters: { p_b: text(read, 1), t_Hg: mercury.celsius.toFixed(1), scale: 'brass' }, rows };
 }
 
 const exampleSeed = 310;

@@ -319,3 +319,60 @@ describe('the example', () => {
 		expect(evaluation.figures['late']?.series).toHaveLength(6);
 	});
 });
+
+describe('what the bench says while the apparatus is there', () => {
+	const codes = (change: (session: Session) => void) => {
+		const session = simulate(222);
+		change(session);
+		return work(session).problems.map(({ code }) => code);
+	};
+	const inFirst = (cells: Record<string, string>) => (session: Session) => {
+		Object.assign(session.tables['runs']?.[0] ?? {}, cells);
+	};
+	const only = (keep: (row: Record<string, string>) => boolean) => (session: Session) => {
+		session.tables['temperatures'] = (session.tables['temperatures'] ?? []).filter(keep);
+	};
+
+	it.each([
+		['no-bomb-volume', ({ parameters }: Session) => delete parameters['V_bomb']],
+		['no-titrant', ({ parameters }: Session) => delete parameters['c_a']],
+		['few-calibrations', ({ tables }: Session) => tables['runs']?.splice(0, 1)],
+		['few-sample-runs', ({ tables }: Session) => tables['runs']?.splice(-1)],
+		['heavy-pellet', inFirst({ m_s: '1.2000' })],
+		['high-pressure', inFirst({ p_O2: '35.0' })],
+		['soot', inFirst({ residue: 'soot' })],
+		['wire-grown', inFirst({ l_after: '12.0' })],
+		['short-fore-period', only((row) => row['run'] !== 'B1' || Number(row['t']) >= 3)],
+		['short-after-period', only((row) => row['run'] !== 'B1' || Number(row['t']) <= 23)],
+		['short-after-period', only((row) => row['run'] !== 'B1' || Number(row['t']) <= 17)],
+		['curved-after-period', inFirst({ t_e: '9.00' })]
+	])('says %s', (code, change) => {
+		expect(codes(change)).toContain(code);
+	});
+
+	it('says nothing of what is in order', () => {
+		expect(codes(() => undefined)).toEqual([]);
+	});
+
+	it('says nothing of an after-period that only cools', () => {
+		// twenty sessions of six runs, seeds fixed; t with 30 degrees of freedom passes four by chance once in 2500
+		let said = 0;
+		for (let seed = 1; seed <= 20; seed += 1) {
+			said += work(simulate(seed)).problems.filter(({ code }) => code === 'curved-after-period').length;
+		}
+		expect(said).toBe(0);
+	});
+
+	it('leaves an aborted run out of everything', () => {
+		const readings = readingsOf(simulate(222));
+		const [first] = readings.tables['runs'] ?? [];
+		if (first) Object.assign(first, { status: 'aborted', reason: 'Soot in the crucible' });
+		const evaluation = evaluate(worksheet, readings);
+		expect(Object.keys(ofRuns(evaluation, 'C_run'))).not.toContain('N1');
+		expect(
+			evaluation.quantities['C_cal']?.budget.find(({ source }) => source.startsWith('C_cal'))
+				?.degreesOfFreedom
+		).toBe(1);
+		expect(evaluation.problems.map(({ code }) => code)).toContain('few-calibrations');
+	});
+});

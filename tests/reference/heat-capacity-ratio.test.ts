@@ -201,3 +201,41 @@ describe('the example', () => {
 		expect(evaluation.workings['gamma.argon'] ?? evaluation.workings['gamma']).toBeDefined();
 	});
 });
+
+describe('what the bench says while the apparatus is there', () => {
+	const codes = (change: (session: Session) => void) => {
+		const session = simulate(314);
+		change(session);
+		return work(session).problems.map(({ code }) => code);
+	};
+	const inFirst = (cells: Record<string, string>) => (session: Session) => {
+		Object.assign(session.tables['trials']?.[0] ?? {}, cells);
+	};
+
+	it.each([
+		['no-barometer', ({ parameters }: Session) => delete parameters['p_b']],
+		['no-zero', ({ parameters }: Session) => delete parameters['z']],
+		['no-density', ({ parameters }: Session) => delete parameters['rho_20']],
+		['no-temperature', ({ parameters }: Session) => delete parameters['t_room']],
+		['few-argon', ({ tables }: Session) => tables['trials']?.splice(0, 2)],
+		['few-nitrogen', ({ tables }: Session) => tables['trials']?.splice(-2)],
+		['third-height-outside', inFirst({ h_3: '700' })],
+		['third-height-outside', inFirst({ h_3: '1' })],
+		['drifting', inFirst({ drift: 'drifting' })],
+		['short-wait', inFirst({ w_3: '40' })],
+		['sea-level-pressure', ({ parameters }: Session) => (parameters['p_b'] = parameters['p_msl'] ?? '')]
+	])('says %s', (code, change) => {
+		expect(codes(change)).toContain(code);
+	});
+
+	it('suspects air in the argon from a fifth of it', () => {
+		// C_V of the mixture is what its parts have: four fifths 3/2 R, one fifth 5/2 R
+		const mixture = 1 + 1 / (0.8 * 1.5 + 0.2 * 2.5);
+		const session = simulate(314, { gamma: { argon: mixture, nitrogen: 1.3998 } });
+		expect(work(session).problems.map(({ code }) => code)).toContain('air-left');
+	});
+
+	it('says nothing of what is in order', () => {
+		expect(codes(() => undefined)).toEqual([]);
+	});
+});

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { combinedUncertainty, coverageFactor, type Quantity } from '$lib/quantities';
 import type { Readings } from '$lib/worksheets';
-import { calculate } from '../../src/lib/worksheets/calculation';
+import { Session } from '../../src/lib/worksheets/session';
 import { water } from './vaporization-of-water';
 
 /** Boiling temperatures (degC) at 400 to 760 torr by 40, from IAPWS-95. */
@@ -32,7 +32,9 @@ function session(t: (celsius: number) => number, p: (torr: number) => number, di
 }
 
 function result(readings: Readings, name: string): Quantity {
-	const quantity = calculate(water, readings).names.get(name);
+	const atWork = new Session(water);
+	atWork.take(readings);
+	const quantity = atWork.names.get(name);
 	if (!quantity) throw new Error(`There is no ${name}.`);
 	return quantity;
 }

@@ -172,8 +172,8 @@ describe('what is missing or cannot be read', () => {
 		if (first) first.cells['colour'] = 'blue';
 		expect(evaluate(water, readings).problems.map(({ code }) => code)).toEqual([
 			'unknown-parameter',
-			'unknown-column',
-			'unknown-table'
+			'unknown-table',
+			'unknown-column'
 		]);
 	});
 

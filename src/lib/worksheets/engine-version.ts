@@ -1,2 +1,2 @@
 /** Version of the arithmetic, part of every snapshot. Raise it whenever any number, rounding or sentence could change. */
-export const engineVersion = '1.0.0';
+export const engineVersion = '1.1.0';

@@ -1,30 +1,36 @@
-import { calculate, namedThings, type Calculation } from './calculation';
 import { engineVersion } from './engine-version';
+import type { Fitted } from './fit-step';
+import { namedValues, namingFor } from './named';
 import { unmetRequirements } from './requirements';
+import { Session } from './session';
 import { showComparisons } from './show-comparisons';
-import { showFigures, showFits } from './show-fits';
+import { showFigures } from './show-figures';
+import { showFits } from './show-fits';
 import { showTables } from './show-tables';
 import { showQuantity } from './shown';
-import type { Evaluation, Readings, ShownQuantity, Worksheet } from './types';
+import type {
+	CarriedValue,
+	Evaluation,
+	FigureData,
+	Readings,
+	ShownFit,
+	ShownQuantity,
+	Worksheet
+} from './types';
 import { showWorkings } from './workings';
+import type { Quantity } from '$lib/quantities';
 
 /**
  * Works up the readings: the same code in the browser while typing and on the server at hand-in. Never throws on
- * readings: what is missing or cannot be read is a problem of the evaluation, with its address.
+ * readings: what is missing or cannot be read is a problem of the evaluation, with its address. `carried` are values
+ * stated in place of computed ones: everything downstream is computed from them.
  */
-export function evaluate(worksheet: Worksheet, readings: Readings): Evaluation {
-	const calculation = calculate(worksheet, readings);
-	const comparisons = showComparisons(calculation);
-	return {
-		engine: engineVersion,
-		problems: [...unmetRequirements(calculation), ...calculation.problems],
-		quantities: showQuantities(calculation),
-		tables: showTables(calculation),
-		fits: showFits(calculation),
-		comparisons,
-		figures: showFigures(calculation),
-		workings: showWorkings(calculation)
-	};
+export function evaluate(
+	worksheet: Worksheet,
+	readings: Readings,
+	carried: readonly CarriedValue[] = []
+): Evaluation {
+	return new Evaluator(worksheet).evaluate(readings, carried);
 }
 
 /** The sample calculations alone, with rows chosen by table name. */
@@ -33,16 +39,56 @@ export function workingsFor(
 	readings: Readings,
 	chosenRows: Readonly<Record<string, string>>
 ): Evaluation['workings'] {
-	return showWorkings(calculate(worksheet, readings), chosenRows);
+	const session = new Session(worksheet);
+	session.take(readings);
+	return showWorkings(session, chosenRows);
 }
 
-function showQuantities(calculation: Calculation): Record<string, ShownQuantity> {
-	const quantities: Record<string, ShownQuantity> = {};
-	const constants = new Map(calculation.worksheet.constants.map(({ name, value }) => [name, String(value)]));
-	for (const thing of namedThings(calculation.worksheet)) {
-		const quantity = calculation.names.get(thing.name);
-		const typed = constants.get(thing.name) ?? calculation.parameters.get(thing.name)?.typed;
-		if (quantity) quantities[thing.name] = showQuantity(quantity, thing, typed);
+/**
+ * An evaluation that is kept from one state of the readings to the next: it says what `evaluate` says and computes only what
+ * an edit touches. Rows whose object is the very same are not even looked at.
+ */
+export class Evaluator {
+	private readonly session: Session;
+	private readonly quantities = new WeakMap<Quantity, ShownQuantity>();
+	private readonly fits = new WeakMap<Fitted, ShownFit>();
+	private readonly series = new WeakMap<object, FigureData['series'][number]>();
+
+	constructor(worksheet: Worksheet) {
+		this.session = new Session(worksheet);
 	}
-	return quantities;
+
+	evaluate(readings: Readings, carried: readonly CarriedValue[] = []): Evaluation {
+		const { session } = this;
+		session.take(readings, carried);
+		const { comparisons, problems } = showComparisons(session);
+		return {
+			engine: engineVersion,
+			problems: [...unmetRequirements(session), ...session.problems, ...problems],
+			quantities: this.showQuantities(),
+			tables: showTables(session),
+			fits: showFits(session, this.fits),
+			comparisons,
+			figures: showFigures(session, this.series),
+			workings: showWorkings(session)
+		};
+	}
+
+	private showQuantities(): Record<string, ShownQuantity> {
+		const { session } = this;
+		const shown: Record<string, ShownQuantity> = {};
+		const constants = new Map(session.worksheet.constants.map(({ name, value }) => [name, String(value)]));
+		for (const value of namedValues(session)) {
+			const { name, group, quantity } = value;
+			let known = this.quantities.get(quantity);
+			if (known?.name !== name) {
+				const typed =
+					group === null ? (constants.get(name) ?? session.parameters.get(name)?.typed) : undefined;
+				known = { ...showQuantity(quantity, namingFor(value), typed), ...(group === null ? {} : { group }) };
+				this.quantities.set(quantity, known);
+			}
+			shown[name] = known;
+		}
+		return shown;
+	}
 }

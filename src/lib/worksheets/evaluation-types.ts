@@ -27,11 +27,25 @@ export interface Problem {
 	parameter?: string;
 	/** when it concerns a named value */
 	name?: string;
+	/** key of the row that the value belongs to */
+	group?: string;
+}
+
+/** A value stated in place of a computed one: everything downstream is computed from it. */
+export interface CarriedValue {
+	/** computed column, fitted parameter or result */
+	name: string;
+	/** row id (or key of the row) for a value that each row has; absent for a single one */
+	row?: string;
+	/** as typed, in the unit of the name: '1.394(12)' */
+	text: string;
 }
 
 /** A value ready to be shown; never rounded except in `display`. */
 export interface ShownQuantity {
-	name: string; // 'H_vap'
+	name: string; // 'H_vap'; 'gamma.argon' where each row of a table has one
+	/** key of the row it belongs to; absent for a single value */
+	group?: string;
 	label: string; // 'Enthalpy of vaporization'
 	symbol: string; // KaTeX source, e.g. '\\Delta_{\\mathrm{vap}}H'
 	value: number; // in `unit`
@@ -76,30 +90,37 @@ export interface ShownTable {
 	name: string;
 	caption: string;
 	columns: ShownColumn[];
-	rows: {
-		id: string;
-		number: number;
-		status: ReadingRow['status'];
-		reason?: string;
-		cells: Record<string, ShownCell>;
-	}[];
+	rows: ShownRow[];
+}
+export interface ShownRow {
+	id: string;
+	number: number;
+	status: ReadingRow['status'];
+	reason?: string;
+	cells: Record<string, ShownCell>;
 }
 export interface ShownFit {
-	name: string;
+	name: string; // 'line'; 'line.argon' where each row of a table has one
+	group?: string;
 	label: string;
-	model: 'line';
+	model: 'line' | 'origin' | 'both-axes' | 'polynomial' | 'linear' | 'curve';
 	policy: 'scatter' | 'stated';
 	points: number;
 	degreesOfFreedom: number;
 	residualStandardDeviation: number | null;
 	chiSquared: number | null;
-	parameters: { slope: ShownQuantity; intercept: ShownQuantity };
-	covariance: number;
+	/** in the model's order; a line has slope and intercept */
+	parameters: ShownQuantity[];
+	/** of the parameters, in their units, in their order */
+	covariance: number[][];
+	/** rounds of an iterated fit; 0 for one solved at once */
+	iterations: number;
 	/** a sentence that says the policy in force */
 	sentence: string;
 }
 export interface ShownComparison {
 	name: string;
+	group?: string;
 	quantity: string;
 	reference: {
 		value: number;
@@ -133,7 +154,10 @@ export interface FigureData {
 			residual: number | null;
 			used: boolean;
 		}[];
+		/** the fitted line or curve through this series with its band; absent where nothing is fitted */
+		curve?: { x: number; y: number; low: number; high: number }[];
 	}[];
+	/** of the only series, where it is a straight line; null otherwise */
 	line: {
 		slope: number;
 		intercept: number;
@@ -142,10 +166,6 @@ export interface FigureData {
 		band: { x: number; low: number; high: number }[];
 	} | null;
 }
-export interface SampleStep {
-	tex: string;
-	note: string;
-} // 'formula', 'substitution', 'result'
 export interface SampleCalculation {
 	name: string;
 	title: string;

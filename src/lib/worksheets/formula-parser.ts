@@ -1,22 +1,34 @@
 import { parse, type MathNode } from 'mathjs/number';
 import { isUnitSymbol } from '$lib/quantities';
-import { columnFunctions, valueFunctions } from './formula';
-import type { Formula } from './types';
+import { isCondition, sizeOf } from './formula';
+import { columnFunctions, valueFunctions } from './functions';
+import type { Comparing, Formula } from './types';
 
 /** A formula that cannot be taken: what about it, in words for its author. */
 export class FormulaProblem extends Error {
 	override readonly name = 'FormulaProblem';
 }
 
+export interface ScopeTable {
+	/** the tables that its rows belong to, nearest first */
+	ancestors: readonly string[];
+	columns: ReadonlyMap<string, 'number' | 'text'>;
+}
+
 /** The names that a formula may use. */
 export interface FormulaScope {
-	/** constants, parameters, slopes, intercepts, results */
+	/** constants, parameters, results, fitted parameters */
 	names: ReadonlySet<string>;
-	/** column name -> its table; columns of several tables that share a name map to null */
-	columns: ReadonlyMap<string, string | null>;
-	/** the table whose rows the formula runs over; null for a result */
+	/** parameters that are choices */
+	choices: ReadonlySet<string>;
+	tables: ReadonlyMap<string, ScopeTable>;
+	/** the table whose rows the formula is for; null for a single result */
 	table: string | null;
 }
+
+/** Longest text and largest tree of a formula: far beyond any in use, and small enough for every page. */
+const longest = 2_000;
+const largest = 500;
 
 const operators = {
 	add: 'add',
@@ -25,22 +37,55 @@ const operators = {
 	divide: 'divide',
 	pow: 'power'
 } as const;
+const comparisons: Readonly<Record<string, Comparing>> = {
+	equal: '==',
+	unequal: '!=',
+	smaller: '<',
+	smallerEq: '<=',
+	larger: '>',
+	largerEq: '>='
+};
 
 /**
- * Ordinary infix mathematics as a JSON tree. The library parses; only numbers, names, units, + - * / ^ and the listed
- * functions pass. A name of the worksheet comes before a unit of the same spelling.
+ * Ordinary infix mathematics as a JSON tree. The library parses; only numbers, names, units, texts in conditions,
+ * + - * / ^, comparisons and the listed functions pass. A name of the worksheet comes before a unit of the same spelling.
  * @throws FormulaProblem
  */
 export function parseFormula(text: string, scope: FormulaScope): Formula {
-	let node: MathNode;
+	if (text.length > longest) throw new FormulaProblem(`A formula has at most ${longest} characters.`);
+	let formula: Formula;
 	try {
-		node = parse(text);
+		formula = convert(parse(text), { scope, over: null });
 	} catch (cause) {
-		throw new FormulaProblem(
-			`"${text}" is not a formula: ${cause instanceof Error ? cause.message : String(cause)}`
-		);
+		if (!(cause instanceof SyntaxError || cause instanceof RangeError)) throw cause;
+		// the library's own problems, and a nesting so deep that no computer follows it
+		const words = cause instanceof RangeError ? 'it is nested too deeply' : cause.message;
+		throw new FormulaProblem(`"${shortened(text)}" is not a formula: ${words}`);
 	}
-	return convert(node, scope, false);
+	if (sizeOf(formula) > largest) throw new FormulaProblem('The formula is too long. Divide it into steps.');
+	return formula;
+}
+
+/** A formula that has to be a value. */
+export function parseValue(text: string, scope: FormulaScope): Formula {
+	const formula = parseFormula(text, scope);
+	if (isCondition(formula) || isText(formula)) {
+		throw new FormulaProblem(`"${shortened(text)}" is a condition or a text. A value is wanted here.`);
+	}
+	return formula;
+}
+
+/** A formula that has to be a condition. */
+export function parseCondition(text: string, scope: FormulaScope): Formula {
+	const formula = parseFormula(text, scope);
+	if (!isCondition(formula)) {
+		throw new FormulaProblem(`"${shortened(text)}" is no condition. Compare with ==, <, > and the like.`);
+	}
+	return formula;
+}
+
+function shortened(text: string): string {
+	return text.length > 80 ? `${text.slice(0, 80)}…` : text;
 }
 
 /** mathjs' own types tell nodes apart by `type`; only these fields are read. */
@@ -53,78 +98,191 @@ interface PlainNode {
 	content?: MathNode;
 }
 
-function convert(node: MathNode, scope: FormulaScope, insideColumnFunction: boolean): Formula {
+interface Place {
+	scope: FormulaScope;
+	/** the table whose rows a function of columns runs over, inside its arguments */
+	over: string | null;
+}
+
+function convert(node: MathNode, place: Place): Formula {
 	const plain = node as unknown as PlainNode;
 	const inner = (part: MathNode | undefined) => {
-		if (!part) throw new FormulaProblem(`"${node.toString()}" is incomplete.`);
-		return convert(part, scope, insideColumnFunction);
+		if (!part) throw new FormulaProblem(`"${shortened(node.toString())}" is incomplete.`);
+		return convert(part, place);
 	};
 	switch (plain.type) {
 		case 'ConstantNode':
-			if (typeof plain.value !== 'number') throw new FormulaProblem(`"${node.toString()}" is not a number.`);
+			if (typeof plain.value === 'string') return { op: 'text', text: plain.value };
+			if (typeof plain.value !== 'number' || !Number.isFinite(plain.value)) {
+				throw new FormulaProblem(`"${shortened(node.toString())}" is not a number.`);
+			}
 			return { op: 'number', value: plain.value, text: String(plain.value) };
 		case 'ParenthesisNode':
 			return inner(plain.content);
 		case 'SymbolNode':
-			return convertName(plain.name ?? '', scope, insideColumnFunction);
-		case 'OperatorNode': {
-			const [left, right] = plain.args ?? [];
-			if (plain.fn === 'unaryMinus') return { op: 'negate', of: inner(left) };
-			if (plain.fn === 'unaryPlus') return inner(left);
-			const fn = String(plain.fn);
-			if (!Object.hasOwn(operators, fn))
-				throw new FormulaProblem(`"${node.toString()}" uses something other than + - * / ^.`);
-			return { op: operators[fn as keyof typeof operators], left: inner(left), right: inner(right) };
-		}
+			return convertName(plain.name ?? '', place);
+		case 'OperatorNode':
+			return convertOperator(plain, shortened(node.toString()), inner);
 		case 'FunctionNode':
-			return convertCall(plain, scope);
+			return convertCall(plain, place);
+		case 'RelationalNode':
+			throw new FormulaProblem('Compare two values at a time and join them with "and".');
 		default:
-			throw new FormulaProblem(`"${node.toString()}" is not part of a formula here.`);
+			throw new FormulaProblem(`"${shortened(node.toString())}" is not part of a formula here.`);
 	}
 }
 
-function convertName(name: string, scope: FormulaScope, insideColumnFunction: boolean): Formula {
-	const table = scope.columns.get(name);
-	if (table !== undefined) {
-		if (table === null) throw new FormulaProblem(`"${name}" is a column of more than one table.`);
-		if (table === scope.table || insideColumnFunction) return { op: 'column', table, column: name };
-		throw new FormulaProblem(`"${name}" is a whole column. Put it into mean(${name}) or sum(${name}).`);
+function convertOperator(
+	plain: PlainNode,
+	text: string,
+	inner: (part: MathNode | undefined) => Formula
+): Formula {
+	const [left, right] = plain.args ?? [];
+	const fn = String(plain.fn);
+	const value = (part: MathNode | undefined): Formula => wanted(inner(part), false, text);
+	if (fn === 'unaryMinus') return { op: 'negate', of: value(left) };
+	if (fn === 'unaryPlus') return value(left);
+	if (fn === 'not') return { op: 'not', of: wanted(inner(left), true, text) };
+	if (fn === 'and' || fn === 'or') {
+		return { op: fn, left: wanted(inner(left), true, text), right: wanted(inner(right), true, text) };
+	}
+	const how = Object.hasOwn(comparisons, fn) ? comparisons[fn] : undefined;
+	if (how) return compare(how, inner(left), inner(right), text);
+	if (!Object.hasOwn(operators, fn)) {
+		throw new FormulaProblem(`"${text}" uses something other than + - * / ^ and comparisons.`);
+	}
+	return { op: operators[fn as keyof typeof operators], left: value(left), right: value(right) };
+}
+
+function isText(formula: Formula): boolean {
+	return formula.op === 'text' || formula.op === 'cell' || formula.op === 'choice';
+}
+
+function compare(how: Comparing, left: Formula, right: Formula, text: string): Formula {
+	if (isText(left) !== isText(right)) throw new FormulaProblem(`"${text}" compares a text with a number.`);
+	if (isText(left) && how !== '==' && how !== '!=') {
+		throw new FormulaProblem(`"${text}": texts are equal (==) or not (!=).`);
+	}
+	if (isCondition(left) || isCondition(right)) throw new FormulaProblem(`"${text}" compares conditions.`);
+	return { op: 'compare', how, left, right };
+}
+
+function wanted(formula: Formula, condition: boolean, text: string): Formula {
+	if (isText(formula)) throw new FormulaProblem(`"${text}": a text can only be compared.`);
+	if (isCondition(formula) === condition) return formula;
+	throw new FormulaProblem(
+		condition ? `"${text}" joins conditions only.` : `"${text}" computes with a condition.`
+	);
+}
+
+function convertName(name: string, { scope, over }: Place): Formula {
+	const from = over ?? scope.table;
+	for (const table of from === null ? [] : [from, ...(scope.tables.get(from)?.ancestors ?? [])]) {
+		const kind = scope.tables.get(table)?.columns.get(name);
+		if (kind) return { op: kind === 'number' ? 'column' : 'cell', table, column: name };
 	}
 	if (scope.names.has(name)) return { op: 'name', name };
+	if (scope.choices.has(name)) return { op: 'choice', name };
+	if (tableOfColumn(name, scope) !== null) {
+		throw new FormulaProblem(`"${name}" is a whole column here. Put it into mean(${name}), say.`);
+	}
 	if (isUnitSymbol(name)) return { op: 'unit', unit: name };
 	throw new FormulaProblem(`"${name}" is neither a name of this experiment nor a unit.`);
 }
 
-function convertCall(node: PlainNode, scope: FormulaScope): Formula {
-	const name = node.name ?? (node.fn as { name?: string } | undefined)?.name ?? '';
-	const args = node.args ?? [];
-	const ofColumn = Object.hasOwn(columnFunctions, name);
-	if (!ofColumn && !Object.hasOwn(valueFunctions, name)) {
-		const known = [...Object.keys(valueFunctions), ...Object.keys(columnFunctions)].join(', ');
-		throw new FormulaProblem(
-			`"${name}" is not a function here. The functions are ${known}; for a product write ${name} * (...).`
-		);
-	}
-	const [argument] = args;
-	if (args.length !== 1 || !argument) throw new FormulaProblem(`${name} takes one value.`);
-	const converted = convert(argument, scope, ofColumn);
-	if (ofColumn && !mentionsColumn(converted)) throw new FormulaProblem(`${name}(...) wants a column.`);
-	return { op: 'call', function: name, arguments: [converted] };
+function tableOfColumn(name: string, scope: FormulaScope): string | null {
+	for (const [table, { columns }] of scope.tables) if (columns.get(name) === 'number') return table;
+	return null;
 }
 
-function mentionsColumn(formula: Formula): boolean {
-	switch (formula.op) {
-		case 'column':
-			return true;
-		case 'negate':
-			return mentionsColumn(formula.of);
-		case 'call':
-			return formula.arguments.some(mentionsColumn);
-		case 'number':
-		case 'unit':
-		case 'name':
-			return false;
-		default:
-			return mentionsColumn(formula.left) || mentionsColumn(formula.right);
+function convertCall(node: PlainNode, place: Place): Formula {
+	const name = node.name ?? (node.fn as { name?: string } | undefined)?.name ?? '';
+	const args = node.args ?? [];
+	const value = (part: MathNode) => wanted(convert(part, place), false, name);
+	if (name === 'if') return convertIf(args, place);
+	if (name === 'given') return convertGiven(args, place);
+	const ofColumns = Object.hasOwn(columnFunctions, name) ? columnFunctions[name] : undefined;
+	const ofValues = Object.hasOwn(valueFunctions, name) ? valueFunctions[name] : undefined;
+	if (ofValues && (!ofColumns || (args.length > 1 && !endsInCondition(args)))) {
+		if (args.length < ofValues.least || args.length > ofValues.most) {
+			const count =
+				ofValues.least === ofValues.most ? 'one value' : `${ofValues.least} to ${ofValues.most} values`;
+			throw new FormulaProblem(`${name} takes ${count}.`);
+		}
+		return { op: 'call', function: name, arguments: args.map(value) };
 	}
+	if (!ofColumns) {
+		const known = [...Object.keys(valueFunctions), ...Object.keys(columnFunctions), 'if'].join(', ');
+		throw new FormulaProblem(
+			`"${shortened(name)}" is not a function here. The functions are ${known}; for a product write ${shortened(name)} * (...).`
+		);
+	}
+	if (place.over !== null) throw new FormulaProblem(`${name} stands inside another function of columns.`);
+	const { columns, places } = ofColumns;
+	if (args.length !== columns + places && args.length !== columns + places + 1) {
+		throw new FormulaProblem(`${name} takes ${columns + places} arguments, and a condition where wanted.`);
+	}
+	const table = tableRunOver(name, args.slice(0, columns), place.scope);
+	const inside: Place = { ...place, over: table };
+	const last = args[columns + places];
+	return {
+		op: 'over',
+		function: name,
+		table,
+		arguments: [
+			...args.slice(0, columns).map((part) => wanted(convert(part, inside), false, name)),
+			...args.slice(columns, columns + places).map(value)
+		],
+		where: last ? wanted(convert(last, inside), true, name) : null
+	};
+}
+
+function convertIf(args: MathNode[], place: Place): Formula {
+	const [condition, yes, no] = args.map((part) => convert(part, place));
+	if (!condition || !yes || !no || args.length !== 3) {
+		throw new FormulaProblem('if takes a condition and two values.');
+	}
+	return {
+		op: 'if',
+		condition: wanted(condition, true, 'if'),
+		yes: wanted(yes, false, 'if'),
+		no: wanted(no, false, 'if')
+	};
+}
+
+function convertGiven(args: MathNode[], place: Place): Formula {
+	const [of] = args.map((part) => convert(part, place));
+	if (args.length !== 1 || !of || (of.op !== 'name' && of.op !== 'column')) {
+		throw new FormulaProblem('given takes the name of a reading.');
+	}
+	return { op: 'given', of };
+}
+
+function endsInCondition(args: MathNode[]): boolean {
+	const last = args.at(-1) as unknown as PlainNode | undefined;
+	const bare = last?.type === 'ParenthesisNode' ? (last.content as unknown as PlainNode) : last;
+	const fn = String(bare?.fn);
+	const called = bare?.type === 'FunctionNode' && bare.name === 'given';
+	return (
+		called ||
+		(bare?.type === 'OperatorNode' && (Object.hasOwn(comparisons, fn) || ['and', 'or', 'not'].includes(fn)))
+	);
+}
+
+/** The table that a function of columns runs over: that of its columns; where parents' columns stand too, the children's. */
+function tableRunOver(name: string, args: MathNode[], scope: FormulaScope): string {
+	const tables = new Set<string>();
+	for (const arg of args) {
+		arg.traverse((node) => {
+			const plain = node as unknown as PlainNode;
+			const table = plain.type === 'SymbolNode' ? tableOfColumn(plain.name ?? '', scope) : null;
+			if (table !== null) tables.add(table);
+		});
+	}
+	if (tables.size === 0) throw new FormulaProblem(`${name}(...) wants a column.`);
+	for (const table of tables) {
+		const ancestors = scope.tables.get(table)?.ancestors ?? [];
+		if ([...tables].every((other) => other === table || ancestors.includes(other))) return table;
+	}
+	throw new FormulaProblem(`${name}(...) mixes columns of tables that have nothing to do with each other.`);
 }

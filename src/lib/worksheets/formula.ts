@@ -1,49 +1,40 @@
 import {
-	absolute,
 	add,
 	divide,
 	exactly,
-	exp,
-	ln,
-	mean,
 	multiply,
 	negate,
 	parseUnit,
 	plainNumber,
 	power,
-	squareRoot,
+	QuantityProblem,
+	sameDimension,
 	subtract,
-	sum,
-	thermodynamicTemperature,
 	type Quantity
 } from '$lib/quantities';
-import type { Formula } from './types';
+import { childrenOf, isLeaf, type Leaf } from './formula-tree';
+import { valueFunctions } from './functions';
+import type { Comparing, Formula } from './types';
 
-/** What a formula may call on single values. `kelvin` turns a Celsius temperature into a thermodynamic one. */
-export const valueFunctions: Readonly<Record<string, (a: Quantity) => Quantity>> = {
-	ln,
-	exp,
-	sqrt: squareRoot,
-	abs: absolute,
-	kelvin: thermodynamicTemperature
-};
-
-/** What a formula may call on a whole column: its argument is worked out for every row in use. */
-export const columnFunctions: Readonly<Record<string, (items: readonly Quantity[]) => Quantity>> = {
-	mean,
-	sum
-};
-
-/** A leaf of a formula: its value comes from outside. Functions of columns count as leaves. */
-export type Leaf = Extract<Formula, { op: 'name' | 'column' | 'call' }>;
+/** Where a formula's leaves come from. All three throw where there is no value. */
+export interface Surroundings {
+	quantity(leaf: Leaf): Quantity;
+	/** the text of a text or choice column, or of a parameter that is a choice */
+	text(leaf: Extract<Formula, { op: 'cell' | 'choice' }>): string;
+	/** whether there is a value */
+	given(leaf: Leaf): boolean;
+	/** called once for each node: the budget of one evaluation */
+	step(): void;
+}
 
 /**
- * The value of a formula. `lookUp` gives the leaves' values and throws where there is none; nothing but the
- * functions above is reachable, and the tree is finite, so evaluation always ends.
+ * The value of a formula. Nothing but the listed operations and functions is reachable, and the tree is finite, so
+ * evaluation always ends.
  * @throws QuantityProblem where dimensions or domains do not fit
  */
-export function evaluateFormula(formula: Formula, lookUp: (leaf: Leaf) => Quantity): Quantity {
-	const value = (part: Formula) => evaluateFormula(part, lookUp);
+export function evaluateFormula(formula: Formula, from: Surroundings): Quantity {
+	from.step();
+	const value = (part: Formula) => evaluateFormula(part, from);
 	switch (formula.op) {
 		case 'number':
 			return plainNumber(formula.value);
@@ -51,7 +42,8 @@ export function evaluateFormula(formula: Formula, lookUp: (leaf: Leaf) => Quanti
 			return { ...exactly(1, parseUnit(formula.unit)), point: false };
 		case 'name':
 		case 'column':
-			return lookUp(formula);
+		case 'over':
+			return from.quantity(formula);
 		case 'negate':
 			return negate(value(formula.of));
 		case 'add':
@@ -64,67 +56,79 @@ export function evaluateFormula(formula: Formula, lookUp: (leaf: Leaf) => Quanti
 			return divide(value(formula.left), value(formula.right));
 		case 'power':
 			return power(value(formula.left), value(formula.right));
+		case 'if':
+			return value(holds(formula.condition, from) ? formula.yes : formula.no);
 		case 'call': {
-			const single = Object.hasOwn(valueFunctions, formula.function)
+			const known = Object.hasOwn(valueFunctions, formula.function)
 				? valueFunctions[formula.function]
 				: undefined;
-			const [argument] = formula.arguments;
-			if (single && argument) return single(value(argument));
-			return lookUp(formula);
+			if (!known) throw new QuantityProblem('domain', `There is no function ${formula.function}.`);
+			return known.of(formula.arguments.map(value));
 		}
-	}
-}
-
-/** The leaves of a formula in the order in which they stand, each once. */
-export function leavesOf(formula: Formula): Leaf[] {
-	const found = new Map<string, Leaf>();
-	const walk = (part: Formula): void => {
-		if (isLeaf(part)) found.set(leafKey(part), part);
-		else childrenOf(part).forEach(walk);
-	};
-	walk(formula);
-	return [...found.values()];
-}
-
-/** Every leaf, those inside functions of columns too: what the formula depends on. */
-export function dependenciesOf(formula: Formula): Leaf[] {
-	const found = new Map<string, Leaf>();
-	const walk = (part: Formula): void => {
-		if (part.op === 'name' || part.op === 'column') found.set(leafKey(part), part);
-		childrenOf(part).forEach(walk);
-	};
-	walk(formula);
-	return [...found.values()];
-}
-
-export function isLeaf(formula: Formula): formula is Leaf {
-	if (formula.op === 'name' || formula.op === 'column') return true;
-	return formula.op === 'call' && Object.hasOwn(columnFunctions, formula.function);
-}
-
-export function leafKey(leaf: Leaf): string {
-	return JSON.stringify(leaf);
-}
-
-/** The table whose rows a function of a column runs over. */
-export function tableOf(formula: Formula): string | null {
-	for (const leaf of dependenciesOf(formula)) if (leaf.op === 'column') return leaf.table;
-	return null;
-}
-
-function childrenOf(formula: Formula): Formula[] {
-	switch (formula.op) {
-		case 'negate':
-			return [formula.of];
-		case 'add':
-		case 'subtract':
-		case 'multiply':
-		case 'divide':
-		case 'power':
-			return [formula.left, formula.right];
-		case 'call':
-			return formula.arguments;
 		default:
-			return [];
+			throw new QuantityProblem('domain', 'A condition or a text stands where a value is wanted.');
 	}
+}
+
+/** Whether a condition holds. */
+export function holds(formula: Formula, from: Surroundings): boolean {
+	from.step();
+	switch (formula.op) {
+		case 'given':
+			return isLeaf(formula.of) && from.given(formula.of);
+		case 'not':
+			return !holds(formula.of, from);
+		case 'and':
+			return holds(formula.left, from) && holds(formula.right, from);
+		case 'or':
+			return holds(formula.left, from) || holds(formula.right, from);
+		case 'compare': {
+			const texts = [textOf(formula.left, from), textOf(formula.right, from)] as const;
+			if (texts[0] !== null && texts[1] !== null) return compareTexts(formula.how, texts[0], texts[1]);
+			const left = evaluateFormula(formula.left, from);
+			const right = evaluateFormula(formula.right, from);
+			if (!sameDimension(left.dimension, right.dimension)) {
+				throw new QuantityProblem('dimension', 'The two sides of a comparison are of different kinds.');
+			}
+			return compareNumbers(formula.how, left.value, right.value);
+		}
+		default:
+			throw new QuantityProblem('domain', 'A condition is wanted, such as t > 5 * min.');
+	}
+}
+
+function textOf(formula: Formula, from: Surroundings): string | null {
+	if (formula.op === 'text') return formula.text;
+	return formula.op === 'cell' || formula.op === 'choice' ? from.text(formula) : null;
+}
+
+function compareTexts(how: Comparing, left: string, right: string): boolean {
+	return how === '==' ? left === right : left !== right;
+}
+
+function compareNumbers(how: Comparing, left: number, right: number): boolean {
+	switch (how) {
+		case '==':
+			return left === right;
+		case '!=':
+			return left !== right;
+		case '<':
+			return left < right;
+		case '<=':
+			return left <= right;
+		case '>':
+			return left > right;
+		case '>=':
+			return left >= right;
+	}
+}
+
+/** Whether a formula is a condition rather than a value. */
+export function isCondition(formula: Formula): boolean {
+	return ['compare', 'and', 'or', 'not', 'given'].includes(formula.op);
+}
+
+/** Nodes of a formula. */
+export function sizeOf(formula: Formula): number {
+	return childrenOf(formula).reduce((sum, child) => sum + sizeOf(child), 1);
 }

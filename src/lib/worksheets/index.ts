@@ -3,7 +3,7 @@
  * parser; zod and mathjs) is `$lib/worksheets/authoring`, for the server and for scripts only.
  */
 export type * from './types';
-export { evaluate, workingsFor } from './evaluate';
+export { evaluate, Evaluator, workingsFor } from './evaluate';
 export { engineVersion } from './engine-version';
 export { readTable } from './read-table';
 export { splitDelimited } from './delimited';

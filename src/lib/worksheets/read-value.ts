@@ -7,7 +7,7 @@ import {
 	type Quantity,
 	type TypedNumber
 } from '$lib/quantities';
-import type { Deviation, Sources } from './sources';
+import type { Deviation, Sources, Standing } from './sources';
 import type { ColumnDefinition, ParameterDefinition, Problem } from './types';
 
 type Definition = Pick<
@@ -27,13 +27,13 @@ export interface ValueReading {
 
 /**
  * One typed text as a quantity with the uncertainty components of its column. `address` says where it stands, as
- * people say it ('Row 7, p'); `place` makes the components' ids unique ('readings.p').
+ * people say it ('Row 7, p').
  */
 export function readValue(
 	typed: string,
 	definition: Definition,
 	address: string,
-	place: string,
+	standing: Standing,
 	sources: Sources
 ): ValueReading {
 	const reading = parseTypedNumber(typed);
@@ -49,7 +49,7 @@ export function readValue(
 		const message = `${address}: "${typed.trim()}" is larger than any quantity here. Kept as typed.`;
 		return { quantity: null, empty: false, problems: [{ severity: 'error', code: 'too-large', message }] };
 	}
-	const deviations = deviationsOf(number, definition, place, sources);
+	const deviations = deviationsOf(number, definition, standing, sources);
 	const quantity = withDeviations(
 		value,
 		deviations.map(({ source, size, acts }) => [
@@ -63,21 +63,21 @@ export function readValue(
 function deviationsOf(
 	number: TypedNumber,
 	definition: Definition,
-	place: string,
+	standing: Standing,
 	sources: Sources
 ): Deviation[] {
 	const factor = intervalUnit(parseUnit(definition.unit)).factor;
 	const shared = definition.uncertainty.filter(({ scope }) => scope !== 'reading');
-	const deviations = shared.map((component) => sources.deviation(component, place));
+	const deviations = shared.map((component) => sources.deviation(component, standing));
 	if (number.standardUncertainty !== null) {
 		// who states an uncertainty with the reading knows its scatter; the instrument's shared part stays
-		return [...deviations, sources.stated(number.standardUncertainty * factor, place, definition.label)];
+		return [...deviations, sources.stated(number.standardUncertainty * factor, standing, definition.label)];
 	}
 	for (const component of definition.uncertainty) {
-		if (component.scope === 'reading') deviations.push(sources.deviation(component, place));
+		if (component.scope === 'reading') deviations.push(sources.deviation(component, standing));
 	}
 	if (definition.resolution !== null) {
-		deviations.push(sources.resolution(Number(definition.resolution) * factor, place, definition.label));
+		deviations.push(sources.resolution(Number(definition.resolution) * factor, standing, definition.label));
 	}
 	return deviations;
 }

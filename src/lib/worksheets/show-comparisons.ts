@@ -21,51 +21,80 @@ import {
 	type Quantity,
 	type Unit
 } from '$lib/quantities';
-import type { Calculation } from './calculation';
+import { evaluateFormula } from './formula';
+import { NotThere } from './lookup';
+import { keyOf, rowSlugs } from './named';
+import type { RowState } from './rows';
+import type { Session } from './session';
 import { coverage } from './shown';
-import type { ComparisonDefinition, ShownComparison } from './types';
+import type { ComparisonDefinition, Problem, Reference, ShownComparison } from './types';
 
-/** Each result that has a value, against the literature. */
-export function showComparisons(calculation: Calculation): Record<string, ShownComparison> {
+/** Each result that has a value, against the literature; what hinders one is told as a problem. */
+export function showComparisons(session: Session): {
+	comparisons: Record<string, ShownComparison>;
+	problems: Problem[];
+} {
 	const comparisons: Record<string, ShownComparison> = {};
-	for (const definition of calculation.worksheet.comparisons) {
-		const measured = calculation.names.get(definition.quantity);
-		if (!measured) continue;
+	const problems: Problem[] = [];
+	for (const { definition, reference, name, group, row, measured } of compared(session)) {
+		const naming = group === null ? { name } : { name, group };
 		try {
-			comparisons[definition.name] = compare(
-				definition,
-				measured,
-				referenceOf(definition, calculation),
-				calculation
-			);
+			const against = referenceOf(name, reference, session, row);
+			comparisons[name] = { ...compare(definition, reference, measured, against, session, row), ...naming };
 		} catch (cause) {
-			if (!(cause instanceof QuantityProblem)) throw cause;
-			const message = `${definition.reference.label}: ${cause.message}`;
-			calculation.problems.push({
-				severity: 'warning',
-				code: 'no-reference',
-				message,
-				name: definition.name
-			});
+			if (!(cause instanceof QuantityProblem) && !(cause instanceof NotThere)) throw cause;
+			const reason = cause instanceof NotThere ? `It waits for ${cause.what}.` : cause.message;
+			const message = `${reference.label}: ${reason}`;
+			problems.push({ severity: 'warning', code: 'no-reference', message, ...naming });
 		}
 	}
-	return comparisons;
+	return { comparisons, problems };
 }
 
-function referenceOf({ name, reference }: ComparisonDefinition, calculation: Calculation): Quantity {
+interface Compared {
+	definition: ComparisonDefinition;
+	reference: Reference;
+	/** 'T_b', 'gamma.argon' */
+	name: string;
+	group: string | null;
+	row: RowState | null;
+	measured: Quantity;
+}
+
+function* compared(session: Session): Generator<Compared> {
+	for (const definition of session.worksheet.comparisons) {
+		const { reference, references, name, quantity } = definition;
+		if (reference) {
+			const measured = session.names.get(quantity);
+			if (measured) yield { definition, reference, name, group: null, row: null, measured };
+			continue;
+		}
+		const per = session.worksheet.results.find((result) => result.name === quantity)?.per ?? '';
+		for (const [row, slug] of rowSlugs(session, per)) {
+			const key = keyOf(session.worksheet, row);
+			const own = Object.hasOwn(references, slug) ? references[slug] : undefined;
+			const measured = row.values.get(quantity);
+			if (own && measured)
+				yield { definition, reference: own, name: `${name}.${slug}`, group: key, row, measured };
+		}
+	}
+}
+
+function referenceOf(name: string, reference: Reference, session: Session, row: RowState | null): Quantity {
 	const unit = parseUnit(reference.unit);
 	let value: Quantity;
 	if (reference.interpolate) {
 		const { at, unit: unitAt, points } = reference.interpolate;
 		const scale = parseUnit(unitAt);
-		const where = calculation.names.get(at);
-		if (!where) throw new QuantityProblem('domain', `It waits for ${at}.`);
+		const where = row?.values.get(at) ?? session.names.get(at);
+		if (!where) throw new NotThere(at);
 		const pairs = points.map((point) => ({
 			x: point.at * scale.factor + scale.offset,
 			y: point.value * unit.factor + unit.offset
 		}));
 		value = interpolate(where, pairs, unit.dimension);
-	} else value = { ...exactly(reference.value ?? NaN, unit), point: false };
+	} else if (reference.formula) value = evaluateFormula(reference.formula, session.surroundings(row));
+	else value = { ...exactly(reference.value ?? NaN, unit), point: false };
 	if (reference.standardUncertainty === null) return value;
 	const component: Component = {
 		id: `${name}:reference`,
@@ -78,11 +107,13 @@ function referenceOf({ name, reference }: ComparisonDefinition, calculation: Cal
 
 function compare(
 	definition: ComparisonDefinition,
+	source: Reference,
 	measured: Quantity,
 	reference: Quantity,
-	calculation: Calculation
+	session: Session,
+	row: RowState | null
 ): ShownComparison {
-	const unit = parseUnit(definition.reference.unit);
+	const unit = parseUnit(source.unit);
 	const difference = subtract({ ...measured, point: false }, reference);
 	const { standard, degreesOfFreedom } = combinedUncertainty(difference);
 	const factor = coverageFactor(coverage, degreesOfFreedom);
@@ -90,7 +121,7 @@ function compare(
 	const u = differenceIn(standard, unit);
 	const expanded = factor * u;
 	const verdict = judge(d, expanded, definition.limit);
-	const stated = definition.reference.standardUncertainty;
+	const stated = source.standardUncertainty;
 	const shownReference = showReference(
 		valueIn(reference, unit),
 		stated,
@@ -107,10 +138,10 @@ function compare(
 		quantity: definition.quantity,
 		reference: {
 			value: valueIn(reference, unit),
-			unit: definition.reference.unit,
+			unit: source.unit,
 			standardUncertainty: stated,
-			conditions: conditionsOf(definition, calculation),
-			source: definition.reference.source,
+			conditions: conditionsOf(source, session, row),
+			source: source.source,
 			display: shownReference
 		},
 		measured: shownMeasured,
@@ -154,8 +185,9 @@ function normaliser(measured: Quantity, reference: Quantity, factor: number, uni
 	return differenceIn(factor * Math.sqrt(variance(measured) + variance(reference)), unit);
 }
 
-function conditionsOf({ reference }: ComparisonDefinition, calculation: Calculation): string {
-	const at = reference.interpolate && calculation.names.get(reference.interpolate.at);
+function conditionsOf(reference: Reference, session: Session, row: RowState | null): string {
+	const name = reference.interpolate?.at ?? '';
+	const at = row?.values.get(name) ?? session.names.get(name);
 	if (!reference.interpolate || !at) return reference.conditions;
 	const unit = parseUnit(reference.interpolate.unit);
 	const text = formatQuantity(Math.round(valueIn(toldIn(at, unit)) * 10) / 10, null, unit).text;

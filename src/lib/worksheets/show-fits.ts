@@ -1,154 +1,96 @@
-import {
-	coverageFactor,
-	covariance,
-	differenceIn,
-	intervalUnit,
-	parseUnit,
-	standardUncertainty,
-	unitText,
-	valueIn,
-	type Quantity
-} from '$lib/quantities';
-import { lineAt } from '$lib/regression';
-import { findColumn, type Calculation, type FittedLine } from './calculation';
-import { coverage, showQuantity } from './shown';
-import type { ColumnDefinition, FigureData, ShownFit } from './types';
+import { covariance, differenceIn, intervalUnit, parseUnit, type Quantity } from '$lib/quantities';
+import type { Fitted } from './fit-step';
+import { findColumn, keyOf, namingFor, rowSlugs } from './named';
+import type { RowState } from './rows';
+import type { Session } from './session';
+import { showQuantity } from './shown';
+import type { FitDefinition, ShownFit } from './types';
 
-/** Points of a band: enough for a smooth edge at any width of page. */
-const bandPoints = 41;
-
-export function showFits(calculation: Calculation): Record<string, ShownFit> {
+/** Every fit that could be computed, under its name, or its name and the row's. */
+export function showFits(session: Session, kept: WeakMap<Fitted, ShownFit>): Record<string, ShownFit> {
 	const fits: Record<string, ShownFit> = {};
-	for (const [name, fitted] of calculation.fits) {
-		const { definition, fit } = fitted;
-		const slope = told(calculation, definition.slope.name);
-		const intercept = told(calculation, definition.intercept.name);
-		const product = intervalUnit(slope.unit).factor * intervalUnit(intercept.unit).factor;
-		fits[name] = {
-			name,
-			label: definition.label,
-			model: 'line',
-			policy: definition.policy,
-			points: fit.points,
-			degreesOfFreedom: fit.degreesOfFreedom,
-			residualStandardDeviation: residualDeviation(calculation, fitted),
-			chiSquared: fit.chiSquared,
-			parameters: {
-				slope: showQuantity(slope, definition.slope),
-				intercept: showQuantity(intercept, definition.intercept)
-			},
-			covariance: covariance(slope, intercept) / product,
-			sentence: policySentence(fitted)
-		};
+	for (const { name, fitted, group } of fitsByName(session)) {
+		let shown = kept.get(fitted);
+		if (shown?.name !== name) kept.set(fitted, (shown = showFit(session, fitted, name, group)));
+		fits[name] = shown;
 	}
 	return fits;
 }
 
+export interface NamedFit {
+	/** 'line', 'line.argon' */
+	name: string;
+	/** key of the row */
+	group: string | null;
+	row: RowState | null;
+	fitted: Fitted;
+}
+
+/** The fits there are, in the experiment's order and that of the rows. */
+export function* fitsByName(session: Session): Generator<NamedFit> {
+	for (const definition of session.worksheet.fits) {
+		if (definition.per === null) {
+			const fitted = session.fits.get(definition.name);
+			if (fitted) yield { name: definition.name, group: null, row: null, fitted };
+			continue;
+		}
+		for (const [row, slug] of rowSlugs(session, definition.per)) {
+			const fitted = session.fits.get(`${definition.name} ${row.row.id}`);
+			if (!fitted) continue;
+			yield { name: `${definition.name}.${slug}`, group: keyOf(session.worksheet, row), row, fitted };
+		}
+	}
+}
+
+function showFit(session: Session, fitted: Fitted, name: string, group: string | null): ShownFit {
+	const { definition, fit, head } = fitted;
+	const suffix = name.slice(definition.name.length);
+	const parameters = fit.parameters.map((quantity, i) => {
+		const naming = definition.parameters[i];
+		if (!naming) throw new Error(`${definition.name} has no parameter ${i + 1}.`);
+		return {
+			quantity,
+			naming: namingFor({ name: `${naming.name}${suffix}`, group, row: head, naming, quantity })
+		};
+	});
+	const size = (quantity: Quantity) => intervalUnit(quantity.unit).factor;
+	return {
+		name,
+		...(group === null ? {} : { group }),
+		label: group === null ? definition.label : `${definition.label}, ${group}`,
+		model: definition.model,
+		policy: definition.policy,
+		points: fit.points,
+		degreesOfFreedom: fit.degreesOfFreedom,
+		residualStandardDeviation: residualDeviation(session, fitted),
+		chiSquared: fit.chiSquared,
+		parameters: parameters.map(({ quantity, naming }) => showQuantity(quantity, naming)),
+		covariance: fit.parameters.map((a) => fit.parameters.map((b) => covariance(a, b) / (size(a) * size(b)))),
+		iterations: fit.iterations,
+		sentence: policySentence(definition, fit.degreesOfFreedom)
+	};
+}
+
 /** In the unit of the y column when all points weigh the same, else of unit weight and without unit. */
-function residualDeviation(calculation: Calculation, { definition, fit }: FittedLine): number | null {
+function residualDeviation(session: Session, { definition, fit }: Fitted): number | null {
 	if (fit.residualStandardDeviation === null || definition.weights === 'stated')
 		return fit.residualStandardDeviation;
-	const column = findColumn(calculation.worksheet, definition.table, definition.y);
+	const column = findColumn(session.worksheet, definition.table, definition.y);
 	return column ? differenceIn(fit.residualStandardDeviation, parseUnit(column.unit)) : null;
 }
 
-function policySentence({ definition, fit }: FittedLine): string {
-	const weights =
-		definition.weights === 'equal'
-			? 'All points weigh the same.'
-			: 'Points are weighted by their stated uncertainty.';
-	if (definition.policy === 'scatter') {
-		return `${weights} The uncertainty of the line comes from the scatter of the points about it (${fit.degreesOfFreedom} degrees of freedom), with the shared uncertainty of the instruments on top.`;
+function policySentence({ model, weights, policy }: FitDefinition, degreesOfFreedom: number): string {
+	const line = model === 'curve' ? 'curve' : 'line';
+	const by =
+		model === 'both-axes'
+			? 'Points are weighted by the uncertainty of both axes.'
+			: weights === 'equal'
+				? 'All points weigh the same.'
+				: weights === 'stated'
+					? 'Points are weighted by their stated uncertainty.'
+					: 'Points have the weights that the experiment states.';
+	if (policy === 'scatter') {
+		return `${by} The uncertainty of the ${line} comes from the scatter of the points about it (${degreesOfFreedom} degrees of freedom), with the shared uncertainty of the instruments on top.`;
 	}
-	return `${weights} The uncertainty of the line comes from the stated uncertainty of the readings; chi-squared tells whether the scatter bears it out.`;
-}
-
-function told(calculation: Calculation, name: string): Quantity {
-	const quantity = calculation.names.get(name);
-	if (!quantity) throw new Error(`The fit left no ${name}.`);
-	return quantity;
-}
-
-/** Points, line, band and residuals, all in the units of the axes. */
-export function showFigures(calculation: Calculation): Record<string, FigureData> {
-	const figures: Record<string, FigureData> = {};
-	for (const figure of calculation.worksheet.figures) {
-		const definition = calculation.worksheet.fits.find((fit) => fit.name === figure.fit);
-		const x = definition && findColumn(calculation.worksheet, definition.table, definition.x);
-		const y = definition && findColumn(calculation.worksheet, definition.table, definition.y);
-		if (!definition || !x || !y) continue;
-		const fitted = calculation.fits.get(definition.name) ?? null;
-		figures[figure.name] = {
-			name: figure.name,
-			caption: figure.caption,
-			x: axisOf(x),
-			y: axisOf(y),
-			series: [{ label: definition.label, points: pointsOf(calculation, definition.table, x, y, fitted) }],
-			line: fitted && lineOf(fitted, x, y)
-		};
-	}
-	return figures;
-}
-
-function axisOf({ label, symbol, unit }: ColumnDefinition): FigureData['x'] {
-	return { label, symbol, unit: unitText(parseUnit(unit)) };
-}
-
-type FigurePoint = FigureData['series'][number]['points'][number];
-
-function pointsOf(
-	calculation: Calculation,
-	table: string,
-	x: ColumnDefinition,
-	y: ColumnDefinition,
-	fitted: FittedLine | null
-): FigurePoint[] {
-	const [unitX, unitY] = [parseUnit(x.unit), parseUnit(y.unit)];
-	const residuals = new Map(fitted?.rows.map((row, i) => [row, fitted.fit.residuals[i] ?? null]));
-	const sizeOf = (quantity: Quantity, unit = unitX) =>
-		differenceIn(standardUncertainty(quantity), unit) || null;
-	return (calculation.tables.get(table) ?? []).flatMap((row) => {
-		const [valueX, valueY] = [row.values.get(x.name), row.values.get(y.name)];
-		if (!valueX || !valueY) return [];
-		const residual = residuals.get(row) ?? null;
-		return [
-			{
-				row: row.row.id,
-				x: valueIn(valueX, unitX),
-				y: valueIn(valueY, unitY),
-				ux: sizeOf(valueX),
-				uy: sizeOf(valueY, unitY),
-				residual: residual === null ? null : differenceIn(residual, unitY),
-				used: row.counts
-			}
-		];
-	});
-}
-
-function lineOf(
-	{ definition, fit, rows }: FittedLine,
-	x: ColumnDefinition,
-	y: ColumnDefinition
-): FigureData['line'] {
-	const [unitX, unitY] = [parseUnit(x.unit), parseUnit(y.unit)];
-	const values = rows.map((row) => row.values.get(definition.x)?.value ?? fit.centreX);
-	const [least, greatest] = [Math.min(...values), Math.max(...values)];
-	const at = lineAt(fit);
-	const factors = new Map<number, number>();
-	const band = Array.from({ length: bandPoints }, (_, i) => {
-		const si = least + ((greatest - least) * i) / (bandPoints - 1);
-		const { value, standard, degreesOfFreedom } = at(si);
-		const factor = factors.get(degreesOfFreedom) ?? coverageFactor(coverage, degreesOfFreedom);
-		factors.set(degreesOfFreedom, factor);
-		const half = factor * standard;
-		const toY = (height: number) => (height - unitY.offset) / unitY.factor;
-		return { x: (si - unitX.offset) / unitX.factor, low: toY(value - half), high: toY(value + half) };
-	});
-	return {
-		slope: (fit.slope.value * unitX.factor) / unitY.factor,
-		intercept: (fit.intercept.value + fit.slope.value * unitX.offset - unitY.offset) / unitY.factor,
-		from: (least - unitX.offset) / unitX.factor,
-		to: (greatest - unitX.offset) / unitX.factor,
-		band
-	};
+	return `${by} The uncertainty of the ${line} comes from the stated uncertainty of the readings; chi-squared tells whether the scatter bears it out.`;
 }

@@ -8,25 +8,33 @@ import {
 	unitText,
 	valueIn
 } from '$lib/quantities';
-import type { Calculation } from './calculation';
-import type { RowState } from './read-readings';
+import { textOf, type RowState } from './rows';
+import type { Session } from './session';
 import { plainDigits } from './shown';
-import type { ColumnDefinition, ShownCell, ShownColumn, ShownTable } from './types';
+import type { ColumnDefinition, ShownCell, ShownColumn, ShownRow, ShownTable } from './types';
 
-export function showTables(calculation: Calculation): Record<string, ShownTable> {
+/** Tables with everything typed and computed; a row in which nothing changed is the very one shown before. */
+export function showTables(session: Session): Record<string, ShownTable> {
 	const tables: Record<string, ShownTable> = {};
-	for (const table of calculation.worksheet.tables) {
+	for (const table of session.worksheet.tables) {
 		const columns = table.columns.map(showColumn);
-		const rows = (calculation.tables.get(table.name) ?? []).map((state) => ({
-			id: state.row.id,
-			number: state.number,
-			status: state.row.status,
-			...(state.row.reason === undefined ? {} : { reason: state.row.reason }),
-			cells: Object.fromEntries(table.columns.map((column) => [column.name, showCell(state, column)]))
-		}));
+		const rows = (session.rows.tables.get(table.name) ?? []).map((state) => {
+			state.shown ??= showRow(state, table.columns);
+			return state.shown;
+		});
 		tables[table.name] = { name: table.name, caption: table.caption, columns, rows };
 	}
 	return tables;
+}
+
+function showRow(state: RowState, columns: readonly ColumnDefinition[]): ShownRow {
+	return {
+		id: state.row.id,
+		number: state.number,
+		status: state.row.status,
+		...(state.row.reason === undefined ? {} : { reason: state.row.reason }),
+		cells: Object.fromEntries(columns.map((column) => [column.name, showCell(state, column)]))
+	};
 }
 
 function showColumn({
@@ -53,7 +61,7 @@ function showColumn({
 /** What was typed stays as typed; what is computed is cut to its own uncertainty. */
 function showCell(state: RowState, column: ColumnDefinition): ShownCell {
 	const problem = state.cellProblems.get(column.name) ?? null;
-	const typed = Object.hasOwn(state.row.cells, column.name) ? (state.row.cells[column.name] ?? '') : '';
+	const typed = textOf(state.row.cells, column.name);
 	const quantity = state.values.get(column.name);
 	if (!quantity)
 		return { text: column.formula === null ? typed : '', value: null, standardUncertainty: null, problem };

@@ -1,4 +1,4 @@
-import { intervalUnit, parseUnit, type Component, type Source } from '$lib/quantities';
+import { intervalUnit, parseUnit, type Component, type Scope, type Source } from '$lib/quantities';
 import type { UncertaintyComponent } from './types';
 
 /** A half-width as a standard deviation (GUM 4.3.7 and 4.3.9). */
@@ -11,57 +11,83 @@ export interface Deviation {
 	acts: 'offset' | 'gain';
 }
 
+/** Where a reading stands: what makes its components' ids unique, and which run a deviation of scope 'run' belongs to. */
+export interface Standing {
+	/** 'readings.p' */
+	place: string;
+	/** row id of the run; '' for the whole session */
+	run: string;
+	/** what is drawn anew in each row: in a table of runs that is one deviation a run */
+	anew: Extract<Scope, 'reading' | 'run'>;
+}
+
 /**
- * Hands out the sources of one evaluation. A shared component is one deviation wherever its name appears, so that a
- * thermometer's offset moves every row alike; a reading-scope component is a new deviation at every call.
+ * Hands out the sources of one worksheet at work. A shared component is one deviation wherever its name appears, so that a
+ * thermometer's offset moves every row alike; one of scope 'run' is one for each run; a reading-scope component is a new
+ * deviation at every call.
  */
 export class Sources {
 	private readonly components = new Map<string, Component>();
 	private readonly shared = new Map<string, Source>();
+	private readonly distributions = new Map<Component, UncertaintyComponent['distribution']>();
 
-	deviation(definition: UncertaintyComponent, place: string): Deviation {
+	deviation(definition: UncertaintyComponent, standing: Standing): Deviation {
 		const size = definition.size / spread[definition.distribution];
 		const factor = definition.acts === 'gain' ? 1 : intervalUnit(parseUnit(definition.unit)).factor;
-		return { source: this.source(definition, place), size: size * factor, acts: definition.acts };
+		return { source: this.source(definition, standing), size: size * factor, acts: definition.acts };
 	}
 
 	/** Half the last digit either way, rectangular; its own draw in every row. `step` in SI. */
-	resolution(step: number, place: string, label: string): Deviation {
-		const component = this.component(`${place}:resolution`, {
+	resolution(step: number, { place, anew }: Standing, label: string): Deviation {
+		const component = this.component(`${place}:resolution`, 'rectangular', {
 			label: `Resolution of ${label.charAt(0).toLowerCase()}${label.slice(1)}`,
-			scope: 'reading',
+			scope: anew,
 			degreesOfFreedom: Infinity
 		});
 		return { source: { component }, size: step / Math.sqrt(12), acts: 'offset' };
 	}
 
 	/** An uncertainty typed with the value itself, as in 1.394(12). */
-	stated(size: number, place: string, label: string): Deviation {
-		const component = this.component(`${place}:stated`, {
+	stated(size: number, { place, anew }: Standing, label: string): Deviation {
+		const component = this.component(`${place}:stated`, 'normal', {
 			label: `${label}, stated with the reading`,
-			scope: 'reading',
+			scope: anew,
 			degreesOfFreedom: Infinity
 		});
 		return { source: { component }, size, acts: 'offset' };
 	}
 
-	private source(definition: UncertaintyComponent, place: string): Source {
+	/** What a component's deviations are drawn from; normal where nothing else was stated. */
+	distributionOf(component: Component): UncertaintyComponent['distribution'] {
+		return this.distributions.get(component) ?? 'normal';
+	}
+
+	private source(definition: UncertaintyComponent, { place, run, anew }: Standing): Source {
 		const degreesOfFreedom = definition.degreesOfFreedom ?? Infinity;
-		const facts = { label: definition.label, scope: definition.scope, degreesOfFreedom };
-		if (definition.scope === 'reading')
-			return { component: this.component(`${place}:${definition.name}`, facts) };
-		const known = this.shared.get(definition.name);
+		const { name, label, scope, distribution } = definition;
+		if (scope === 'reading') {
+			const facts = { label, scope: anew, degreesOfFreedom };
+			return { component: this.component(`${place}:${name}`, distribution, facts) };
+		}
+		const key = scope === 'run' ? `${name} ${run}` : name;
+		const known = this.shared.get(key);
 		if (known) return known;
-		const source: Source = { component: this.component(definition.name, facts) };
-		this.shared.set(definition.name, source);
+		const component = this.component(name, distribution, { label, scope, degreesOfFreedom });
+		const source: Source = { component };
+		this.shared.set(key, source);
 		return source;
 	}
 
-	private component(id: string, facts: Omit<Component, 'id'>): Component {
+	private component(
+		id: string,
+		distribution: UncertaintyComponent['distribution'],
+		facts: Omit<Component, 'id'>
+	): Component {
 		const known = this.components.get(id);
 		if (known) return known;
 		const component: Component = { id, ...facts };
 		this.components.set(id, component);
+		this.distributions.set(component, distribution);
 		return component;
 	}
 }

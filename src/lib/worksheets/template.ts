@@ -1,5 +1,6 @@
 import { LineCounter, isNode, parseDocument } from 'yaml';
-import { readWorksheet, type FieldPath } from './schema';
+import type { FieldPath } from './compile';
+import { readWorksheet } from './schema';
 import { WorksheetSchemaProblem } from './schema-problem';
 import type { Worksheet } from './types';
 

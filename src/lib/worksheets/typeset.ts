@@ -1,6 +1,6 @@
 import { parseUnit, unitTex } from '$lib/quantities';
-import { isLeaf, type Leaf } from './formula';
-import type { Formula } from './types';
+import { isLeaf, type Leaf } from './formula-tree';
+import type { Comparing, Formula } from './types';
 
 /** How leaves are written: as symbols, or as numbers with their units. */
 export interface LeafTypes {
@@ -12,6 +12,15 @@ export interface LeafTypes {
 	/** between factors: a thin space for symbols, a cross for numbers */
 	times: string;
 }
+
+const comparing: Readonly<Record<Comparing, string>> = {
+	'==': '=',
+	'!=': '\\neq',
+	'<': '<',
+	'<=': '\\le',
+	'>': '>',
+	'>=': '\\ge'
+};
 
 /** Binding strength, so that parentheses stand only where they are needed. */
 const strength = { sum: 1, sign: 2, product: 3, power: 4, atom: 5 } as const;
@@ -80,9 +89,45 @@ function write(formula: Formula, types: LeafTypes): Written {
 				tex: `${inner(formula.left, strength.atom)}^{${write(formula.right, types).tex}}`,
 				binds: strength.power
 			};
-		default:
+		case 'call':
 			return { tex: writeCall(formula, types), binds: strength.atom };
+		case 'if': {
+			const [yes, no] = [write(formula.yes, types).tex, write(formula.no, types).tex];
+			const condition = write(formula.condition, types).tex;
+			const tex = `\\begin{cases} ${yes} & ${condition} \\\\ ${no} & \\text{otherwise} \\end{cases}`;
+			return { tex, binds: strength.atom };
+		}
+		default:
+			return { tex: writeCondition(formula, types), binds: strength.atom };
 	}
+}
+
+/** Conditions and texts, as they stand beside a value that depends on them. */
+function writeCondition(formula: Formula, types: LeafTypes): string {
+	const tex = (part: Formula) => write(part, types).tex;
+	switch (formula.op) {
+		case 'compare':
+			return `${tex(formula.left)} ${comparing[formula.how]} ${tex(formula.right)}`;
+		case 'and':
+		case 'or':
+			return `${tex(formula.left)}\\ \\text{${formula.op}}\\ ${tex(formula.right)}`;
+		case 'not':
+			return `\\text{not}\\ ${tex(formula.of)}`;
+		case 'given':
+			return `${tex(formula.of)}\\ \\text{given}`;
+		case 'text':
+			return `\\text{${plainText(formula.text)}}`;
+		case 'cell':
+			return `\\text{${plainText(formula.column)}}`;
+		case 'choice':
+			return `\\text{${plainText(formula.name)}}`;
+		default:
+			return '';
+	}
+}
+
+function plainText(text: string): string {
+	return text.replace(/[\\{}$&#^_%~]/g, ' ');
 }
 
 function writeCall(formula: Extract<Formula, { op: 'call' }>, types: LeafTypes): string {
@@ -98,7 +143,22 @@ function writeCall(formula: Extract<Formula, { op: 'call' }>, types: LeafTypes):
 			return `\\mathrm{e}^{${inside}}`;
 		case 'kelvin':
 			return `\\left(${types.celsius(argument)} + 273.15\\right)\\,\\mathrm{K}`;
-		default:
+		case 'ln':
+		case 'sin':
+		case 'cos':
+		case 'tan':
 			return `\\${formula.function}\\left(${inside}\\right)`;
+		case 'log10':
+			return `\\log_{10}\\left(${inside}\\right)`;
+		case 'asin':
+		case 'acos':
+		case 'atan':
+			return `\\arc${formula.function.slice(1)}\\left(${inside}\\right)`;
+		case 'u':
+			return `u\\left(${inside}\\right)`;
+		default: {
+			const all = formula.arguments.map((each) => write(each, types).tex).join(',\\ ');
+			return `\\${formula.function}\\left(${all}\\right)`;
+		}
 	}
 }

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { evaluate, readTable, type Evaluation, type Readings } from '$lib/worksheets';
-import { exampleText, readingsOf, worksheetOf, type Session } from './simulated-session';
+import { bounds, coverage, exampleText, readingsOf, worksheetOf, type Session } from './simulated-session';
 
 interface Simulation {
 	simulate: (
@@ -237,5 +237,22 @@ describe('what the bench says while the apparatus is there', () => {
 
 	it('says nothing of what is in order', () => {
 		expect(codes(() => undefined)).toEqual([]);
+	});
+});
+
+describe('coverage of the 95 % interval', () => {
+	it('holds ratios and heat capacities in 94 to 96 of 100 sessions', { timeout: 600_000 }, () => {
+		const truth: Record<string, number> = {};
+		for (const [gas, ratio] of Object.entries(ideal)) {
+			truth[`gamma.${gas}`] = ratio;
+			truth[`C_V.${gas}`] = gasConstant / (ratio - 1);
+			truth[`C_p.${gas}`] = (ratio * gasConstant) / (ratio - 1);
+		}
+		const { draws, share } = coverage(worksheet, (seed) => simulate(seed, { gamma: ideal }), truth);
+		const [low, high] = bounds(0.94, 0.96, draws);
+		for (const [name, found] of Object.entries(share)) {
+			expect(found, name).toBeGreaterThan(low);
+			expect(found, name).toBeLessThan(high);
+		}
 	});
 });

@@ -30,24 +30,39 @@ export function variable(value: number, index: number, count: number): Dual {
 
 /** The one place where derivatives combine: a function's value and its derivative towards one argument. */
 function along(value: number, a: Dual, slope: number): Dual {
-	const { gradient } = a;
-	const count = gradient.length;
-	if (count === 0) return { value, gradient: fixed };
-	const result = new Array<number>(count);
-	for (let i = 0; i < count; i += 1) result[i] = slope * (gradient[i] ?? 0);
-	return { value, gradient: result };
+	const g = a.gradient;
+	// arrays written out are several times as fast as filled ones, and most models have few parameters
+	switch (g.length) {
+		case 0:
+			return { value, gradient: fixed };
+		case 1:
+			return { value, gradient: [slope * (g[0] ?? 0)] };
+		case 2:
+			return { value, gradient: [slope * (g[0] ?? 0), slope * (g[1] ?? 0)] };
+		case 3:
+			return { value, gradient: [slope * (g[0] ?? 0), slope * (g[1] ?? 0), slope * (g[2] ?? 0)] };
+		default:
+			return { value, gradient: g.map((each) => slope * each) };
+	}
 }
 
 /** The same towards two arguments. */
 function alongBoth(value: number, a: Dual, slopeA: number, b: Dual, slopeB: number): Dual {
-	const count = a.gradient.length;
 	if (b.gradient.length === 0) return along(value, a, slopeA);
-	if (count === 0) return along(value, b, slopeB);
-	const result = new Array<number>(count);
-	for (let i = 0; i < count; i += 1) {
-		result[i] = slopeA * (a.gradient[i] ?? 0) + slopeB * (b.gradient[i] ?? 0);
+	if (a.gradient.length === 0) return along(value, b, slopeB);
+	const g = a.gradient;
+	const h = b.gradient;
+	const mixed = (i: number) => slopeA * (g[i] ?? 0) + slopeB * (h[i] ?? 0);
+	switch (g.length) {
+		case 1:
+			return { value, gradient: [mixed(0)] };
+		case 2:
+			return { value, gradient: [mixed(0), mixed(1)] };
+		case 3:
+			return { value, gradient: [mixed(0), mixed(1), mixed(2)] };
+		default:
+			return { value, gradient: g.map((_, i) => mixed(i)) };
 	}
-	return { value, gradient: result };
 }
 
 export function add(a: Dual, b: Dual): Dual {

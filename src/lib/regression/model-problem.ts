@@ -1,6 +1,6 @@
 import type { Quantity } from '$lib/quantities';
 import { constant, variable, type Dual } from './dual';
-import type { Objective } from './marquardt';
+import type { Objective } from './descent';
 import type { InputSlope } from './model-fit';
 
 /** A model in SI numbers: written in dual numbers, so that its derivatives are exact. */

@@ -1,5 +1,6 @@
 import type { Quantity } from '$lib/quantities';
 import { bendBy } from './bend';
+import { squares } from './descent';
 import { constant } from './dual';
 import { mostWeightings } from './linear';
 import { minimise, type Minimum } from './marquardt';
@@ -82,10 +83,6 @@ function solve(problem: ModelProblem, start: readonly number[], { weights: kind 
 	}
 	if (!minimum) throw outOfRange();
 	return { minimum, weights };
-}
-
-function squares(values: Float64Array): number {
-	return values.reduce((sum, each) => sum + each * each, 0);
 }
 
 function lengthOf(row: readonly number[]): number {

@@ -15,8 +15,11 @@ export class Orthogonal {
 	private readonly diagonal: Float64Array;
 	private readonly sizes: Float64Array;
 
-	/** @throws FitProblem 'singular' where a column depends on the others */
-	constructor(columns: readonly ArrayLike<number>[], rows: number, leastApart = leastIndependence) {
+	/**
+	 * 'tolerant' takes columns that depend on others, for problems that are damped afterwards.
+	 * @throws FitProblem 'singular' where a column depends on the others
+	 */
+	constructor(columns: readonly ArrayLike<number>[], rows: number, kind: 'strict' | 'tolerant' = 'strict') {
 		this.rows = rows;
 		this.count = columns.length;
 		this.work = columns.map((column) => Float64Array.from(column));
@@ -24,14 +27,14 @@ export class Orthogonal {
 		this.sizes = new Float64Array(this.count);
 		for (let k = 0; k < this.count; k += 1) {
 			const column = this.work[k] ?? new Float64Array();
-			const before = lengthFrom(column, 0);
 			const apart = lengthFrom(column, k);
-			if (!(apart > leastApart * before)) throw singular();
+			if (kind === 'strict' && !(apart > leastIndependence * lengthFrom(column, 0))) throw singular();
 			const first = column[k] ?? 0;
 			const alpha = first > 0 ? -apart : apart;
 			column[k] = first - alpha;
 			this.diagonal[k] = alpha;
-			this.sizes[k] = apart * (apart + Math.abs(first));
+			// a column without length of its own reflects nothing
+			this.sizes[k] = apart * (apart + Math.abs(first)) || Infinity;
 			for (let j = k + 1; j < this.count; j += 1) this.reflect(this.work[j] ?? new Float64Array(), k);
 		}
 	}
@@ -56,6 +59,18 @@ export class Orthogonal {
 
 	private entry(row: number, column: number): number {
 		return row === column ? (this.diagonal[column] ?? 0) : (this.work[column]?.[row] ?? 0);
+	}
+
+	/** R as columns, for small problems that stand for the tall one. */
+	triangle(): Float64Array[] {
+		return this.work.map((_, j) => Float64Array.from({ length: this.count }, (__, i) => (i <= j ? this.entry(i, j) : 0))); // prettier-ignore
+	}
+
+	/** Whether column k holds more than rounding that the columns before it do not. */
+	standsApart(k: number): boolean {
+		let before = 0;
+		for (let i = 0; i <= k; i += 1) before += this.entry(i, k) ** 2;
+		return Math.abs(this.entry(k, k)) > leastIndependence * Math.sqrt(before);
 	}
 
 	/** R^-1 b for the first `count` of b, in place. */

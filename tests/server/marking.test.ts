@@ -392,6 +392,31 @@ describe('remarks', () => {
 		expect(foreign.kind).toBe('conflict');
 	});
 
+	it('of two markings that send one id at once, one gets it and the other is told', async () => {
+		const course = await markingCourse();
+		for (let round = 0; round < 5; round++) {
+			const [one, two] = [
+				await begin(course.grader, await handedIn(course)),
+				await begin(course.grader, await handedIn(course))
+			];
+			const remark = uuidv7();
+			const outcomes = await Promise.allSettled(
+				[one, two].map((state) =>
+					marking.addRemark(act(course.grader, { revision: state.revision }), {
+						remark,
+						kind: 'note',
+						body: 'Here.',
+						marking: state.id,
+						anchor: anchorOn('We', 0)
+					})
+				)
+			);
+			expect(outcomes.map(({ status }) => status).sort()).toEqual(['fulfilled', 'rejected']);
+			const refused = outcomes.find((outcome) => outcome.status === 'rejected');
+			expect((refused?.reason as Refusal).kind).toBe('conflict');
+		}
+	});
+
 	it('are kept once for each wording, counted, and belong to who kept them', async () => {
 		const course = await markingCourse();
 		const keep = (viewer: Viewer, kind: 'note' | 'question') =>

@@ -1,7 +1,8 @@
+import { eq } from 'drizzle-orm';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import * as Y from 'yjs';
 import { readReadings, seedReadings, writeReadings } from '../../src/lib/collab';
-import { closeDatabase, database } from '../../src/lib/server/db';
+import { closeDatabase, database, schema } from '../../src/lib/server/db';
 import * as readings from '../../src/lib/server/readings';
 import { evaluate, workingsFor, type Readings } from '../../src/lib/worksheets';
 import { makeCourse, refusalOf, type MadeCourse } from '../factories';
@@ -50,6 +51,13 @@ describe('a bench', () => {
 		expect(opened.map(({ document }) => document.canWrite)).toEqual([true, true, false]);
 		expect(opened[0]?.readings).toEqual({ parameters: {}, tables: { readings: [] } });
 		expect(opened[0]?.people.map(({ initials }) => initials)).toEqual(['IO', 'TL']);
+		const written = await database()
+			.select({ action: schema.audit.action, subject: schema.audit.subjectId })
+			.from(schema.audit)
+			.where(eq(schema.audit.courseId, course.id));
+		expect(written.filter(({ action }) => action === 'bench.open')).toEqual([
+			{ action: 'bench.open', subject: opened[0]?.document.id }
+		]);
 	});
 
 	it('is not there for others', async () => {

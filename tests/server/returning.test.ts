@@ -3,6 +3,7 @@ import { v7 as uuidv7 } from 'uuid';
 import { describe, expect, it } from 'vitest';
 import type { Viewer } from '../../src/lib/server/auth';
 import { requestDigest } from '../../src/lib/server/db';
+import type { Refusal } from '../../src/lib/server/errors';
 import { letters } from '../../src/lib/server/mail';
 import * as marking from '../../src/lib/server/marking';
 import * as moderation from '../../src/lib/server/moderation';
@@ -222,6 +223,28 @@ describe('a return', () => {
 		expect(sheet.report.remarks[0]?.replies).toMatchObject([
 			{ id: reply, body: 'The bath drifted by 0.1 K.', own: true }
 		]);
+	});
+
+	it('of two answers that take one id at once, one gets it and the other is told', async () => {
+		const course = await markingCourse();
+		const reports = [await handedIn(course), await handedIn(course)];
+		for (const report of reports) await mark(course, report);
+		await give(course, reports);
+		for (let round = 0; round < 5; round++) {
+			const reply = uuidv7();
+			const outcomes = await Promise.allSettled(
+				reports.map((report) =>
+					marking.replyToRemark(act(report.author), {
+						remark: remarkOf.get(report.report) ?? '',
+						reply,
+						body: 'The bath drifted.'
+					})
+				)
+			);
+			expect(outcomes.map(({ status }) => status).sort()).toEqual(['fulfilled', 'rejected']);
+			const refused = outcomes.find((outcome) => outcome.status === 'rejected');
+			expect((refused?.reason as Refusal).kind).toBe('conflict');
+		}
 	});
 });
 

@@ -9,6 +9,8 @@ import { lockMarking, requireOpen, requireRevision } from './steps';
 
 const { anchors, remarks, snapshotSections } = schema;
 
+const taken = 'This id names another remark. Send a new one.';
+
 /**
  * Adds a remark under the client's own id. A repeat finds the remark there and changes nothing.
  * Errors: 'conflict' when the id names a remark of another marking; 'stale'; 'unprocessable' for a section that is not there.
@@ -20,8 +22,7 @@ export async function addRemark(
 	return transact(act.repeatable, async (tx) => {
 		const marking = await lockMarking(tx, act, 'marking.change', input.marking);
 		const [known] = await tx.select().from(remarks).where(eq(remarks.id, input.remark));
-		if (known && known.markingId !== marking.id)
-			throw conflict('This id names another remark. Send a new one.');
+		if (known && known.markingId !== marking.id) throw conflict(taken);
 		if (known && (await newestRevision(tx, known.id))) return stateOf(tx, marking.id);
 		await requireOpen(tx, marking);
 		requireRevision(act, marking);
@@ -34,7 +35,13 @@ export async function addRemark(
 			);
 		if (!there)
 			throw unprocessable('The report has no such section.', { 'anchor.section': 'Select the words again.' });
-		await tx.insert(remarks).values({ id: input.remark, markingId: marking.id });
+		// Of two markings that take one id at once, the second waits here for the first and then finds it taken.
+		const made = await tx
+			.insert(remarks)
+			.values({ id: input.remark, markingId: marking.id })
+			.onConflictDoNothing()
+			.returning({ id: remarks.id });
+		if (made.length === 0) throw conflict(taken);
 		await tx.insert(anchors).values({
 			remarkId: input.remark,
 			snapshotId: marking.snapshotId,

@@ -11,6 +11,8 @@ export interface DocumentRow {
 	authorId: string | null;
 	epoch: number;
 	seq: number;
+	/** not there before this call */
+	made: boolean;
 }
 
 /**
@@ -34,9 +36,10 @@ export async function ensureDocuments(
 		({ kind, key, authorId: owner }) =>
 			sql`(${uuidv7()}::uuid, ${workId}::uuid, ${owner}::uuid, ${kind}, ${key})`
 	);
-	await tx.execute(sql`
+	const made = await tx.execute<{ id: string }>(sql`
 		insert into documents (id, work_id, author_id, kind, key) values ${sql.join(values, sql`, `)}
-		on conflict on constraint documents_one do nothing`);
+		on conflict on constraint documents_one do nothing returning id`);
+	const ids = new Set(made.map(({ id }) => id));
 	await setFreezing(tx, workId);
 	const rows = await tx.execute<{
 		id: string;
@@ -50,7 +53,9 @@ export async function ensureDocuments(
 		where work_id = ${workId} and (author_id is null or author_id = ${authorId}::uuid)`);
 	return wanted.flatMap(({ kind, key, authorId: owner }) => {
 		const row = rows.find((one) => one.kind === kind && one.key === key && one.author_id === owner);
-		return row ? [{ id: row.id, kind, key, authorId: owner, epoch: row.epoch, seq: Number(row.seq) }] : [];
+		if (!row) return [];
+		const { id, epoch, seq } = row;
+		return [{ id, kind, key, authorId: owner, epoch, seq: Number(seq), made: ids.has(id) }];
 	});
 }
 

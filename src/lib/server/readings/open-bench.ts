@@ -1,6 +1,7 @@
 import { sql } from 'drizzle-orm';
 import { readReadings } from '$lib/collab';
 import { evaluate, type Evaluation, type Readings, type Worksheet } from '$lib/worksheets';
+import * as audit from '../audit';
 import { authorise, type Viewer } from '../auth';
 import { database, type Database } from '../db';
 import * as experiments from '../experiments';
@@ -21,17 +22,31 @@ export interface Bench {
 	people: { id: string; name: string; initials: string }[];
 }
 
-/** The readings document of a work; made here when nobody has opened the bench before. */
-async function readingsDocument(db: Database, workId: string): Promise<string> {
+/** The readings document of a work; made here, for whoever looks first, when nobody has opened the bench before. */
+async function readingsDocument(db: Database, viewer: Viewer, workId: string): Promise<string> {
 	const find = () =>
 		db.execute<{ id: string }>(
 			sql`select id from documents where work_id = ${workId} and kind = 'readings' and key = 'readings'`
 		);
 	const [there] = await find();
 	if (there) return there.id;
-	const [made] = await db.transaction((tx) => ensureDocuments(tx, workId, [], null));
-	if (!made) throw new Error(`work ${workId} has no readings document`);
-	return made.id;
+	return db.transaction(async (tx) => {
+		const [document] = await ensureDocuments(tx, workId, [], null);
+		if (!document) throw new Error(`work ${workId} has no readings document`);
+		if (document.made) {
+			const [team] = await tx.execute<{ course_id: string }>(
+				sql`select t.course_id from work w join teams t on t.id = w.team_id where w.id = ${workId}`
+			);
+			await audit.record(tx, {
+				actorId: viewer.id,
+				courseId: team?.course_id ?? null,
+				action: 'bench.open',
+				subjectKind: 'document',
+				subjectId: document.id
+			});
+		}
+		return document.id;
+	});
 }
 
 /** What the readings page shows to those who may see the work. Errors: Refusal 'not-found'. */
@@ -41,7 +56,7 @@ export async function openBench(viewer: Viewer, workId: string): Promise<Bench> 
 	const { assignmentId, teamId } = await workRow(db, workId);
 	const [worksheet, documentId, kept, people] = await Promise.all([
 		experiments.worksheetOf(db, assignmentId),
-		readingsDocument(db, workId),
+		readingsDocument(db, viewer, workId),
 		files.ofWork(viewer, workId),
 		db.execute<{ id: string; name: string; initials: string }>(sql`
 			select u.id, u.name, u.initials from team_members tm join users u on u.id = tm.user_id
@@ -85,7 +100,7 @@ export async function storedReadings(
 	await authorise(db, viewer, 'work.see', workId);
 	const { assignmentId } = await workRow(db, workId);
 	const worksheet = await experiments.worksheetOf(db, assignmentId);
-	const documentId = await readingsDocument(db, workId);
+	const documentId = await readingsDocument(db, viewer, workId);
 	const access = await documentAccess(db, viewer.id, documentId);
 	const { doc, seq } = await storedDocument(db, documentId);
 	const readings = readReadings(

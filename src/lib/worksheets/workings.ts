@@ -16,7 +16,7 @@ import {
 	type Unit
 } from '$lib/quantities';
 import { fitWorkings, resultTex } from './fit-workings';
-import { evaluateFormula, type Surroundings } from './formula';
+import { evaluateFormula, holds, type Surroundings } from './formula';
 import { isLeaf, leafKey, leavesOf, type Leaf } from './formula-tree';
 import { NotThere } from './lookup';
 import { findColumn, namedValues, namingFor, namingOf, thingsByRow } from './named';
@@ -99,7 +99,7 @@ function workOut(
 		overUnit: () => null,
 		times: '\\,'
 	});
-	const substituted = typeset(formula, {
+	const substituted = typeset(taken(formula, surroundings), {
 		leaf: (leaf) => leafNumber(calculation, leaf, lookUp(leaf), row),
 		celsius: (part) =>
 			(isLeaf(part) && typedText(calculation, part, row)) ||
@@ -168,6 +168,27 @@ function probed(formula: Formula, surroundings: Surroundings): Quantity | null {
 	} catch (cause) {
 		if (cause instanceof QuantityProblem) return null;
 		throw cause;
+	}
+}
+
+/** The formula with each condition settled: the branch that is not taken may lack its values. */
+function taken(formula: Formula, surroundings: Surroundings): Formula {
+	const inner = (part: Formula) => taken(part, surroundings);
+	switch (formula.op) {
+		case 'if':
+			return inner(holds(formula.condition, surroundings) ? formula.yes : formula.no);
+		case 'negate':
+			return { ...formula, of: inner(formula.of) };
+		case 'add':
+		case 'subtract':
+		case 'multiply':
+		case 'divide':
+		case 'power':
+			return { ...formula, left: inner(formula.left), right: inner(formula.right) };
+		case 'call':
+			return { ...formula, arguments: formula.arguments.map(inner) };
+		default:
+			return formula;
 	}
 }
 

@@ -66,21 +66,24 @@ export function rateConstant(acid, celsius) {
 /**
  * Five runs. Sizes are standard deviations: of one angle (degrees), of the blank, of the run's temperature and of the
  * moment of mixing; `acid` and `glucose` are relative and the same in all runs. `noise: 0` makes every reading true,
- * `rounded: false` leaves it unrounded, and `finalHalfLives` says when the last angle is read.
+ * `rounded: false` leaves it unrounded, and `finalHalfLives` says when the last angle is read. `actual` holds the rate
+ * constant (1/min) that each run really had, at its real temperature.
  */
-export function simulate({
+export function simulate(
 	seed,
-	noise = 1,
-	rounded = true,
-	finalHalfLives = 14,
-	angleDegrees = 0.02,
-	blank = 0.02,
-	temperatureKelvins = 0.2,
-	mixing = 0.05,
-	acid = 0.005,
-	glucose = 0.002,
-	tube = 0.0005
-}) {
+	{
+		noise = 1,
+		rounded = true,
+		finalHalfLives = 14,
+		angleDegrees = 0.02,
+		blank = 0.02,
+		temperatureKelvins = 0.2,
+		mixing = 0.05,
+		acid = 0.005,
+		glucose = 0.002,
+		tube = 0.0005
+	} = {}
+) {
 	const random = uniform(seed);
 	const deviation = (size) => noise * size * normal(random);
 	const text = (value, decimals) => (rounded ? value.toFixed(decimals) : String(value));
@@ -92,10 +95,12 @@ export function simulate({
 	const amplitude = truth.alphaRotation * scale - final;
 
 	const tables = { runs: [], readings: [] };
+	const actual = {};
 	for (const { run, acid: millilitres, step } of runs) {
 		const celsius = truth.nominalCelsius + noise * 0.1 * Math.round(2 * random() - 1);
 		const concentration = (trueAcid * millilitres) / mixtureMillilitres;
 		const k = rateConstant(concentration, celsius + deviation(temperatureKelvins));
+		actual[run] = k;
 		const start = mixingMinutes + deviation(mixing);
 		const angle = (minutes) =>
 			final + amplitude * Math.exp(-k * (minutes - start)) + blankDegrees + deviation(angleDegrees);
@@ -124,7 +129,7 @@ export function simulate({
 		V_part: text(acidPartMillilitres, 2),
 		V_mix: text(mixtureMillilitres, 2)
 	};
-	return { parameters, tables };
+	return { parameters, tables, actual };
 }
 
 const exampleSeed = 2104;
@@ -142,7 +147,7 @@ const headers = {
 };
 
 if (process.argv[1] === fileURLToPath(import.meta.url)) {
-	const { parameters, tables } = simulate({ seed: exampleSeed });
+	const { parameters, tables } = simulate(exampleSeed);
 	const folder = new URL('./example/', import.meta.url);
 	for (const [table, columns] of Object.entries(headers)) {
 		const lines = tables[table].map((row) => Object.keys(columns).map((name) => row[name]).join(',')); // prettier-ignore

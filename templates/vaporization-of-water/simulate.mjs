@@ -63,16 +63,18 @@ function columnHeight(torr) {
  * whose own offsets (0.2 K, 0.3 torr, standard deviations) are the same in every row. `instrument` tells what the
  * pressure is read on: the electronic gauge, or a closed or open mercury column (offsets and noise in mm then).
  */
-export function simulate({
+export function simulate(
 	seed,
-	noiseKelvins = 0.1,
-	noiseTorr = 0.5,
-	thermometerKelvins = 0.2,
-	gaugeTorr = 0.3,
-	barometerTorr = 0.3,
-	instrument = 'gauge',
-	rounded = true
-}) {
+	{
+		noiseKelvins = 0.1,
+		noiseTorr = 0.5,
+		thermometerKelvins = 0.2,
+		gaugeTorr = 0.3,
+		barometerTorr = 0.3,
+		instrument = 'gauge',
+		rounded = true
+	} = {}
+) {
 	const random = uniform(seed);
 	const text = (value, decimals) => (rounded ? value.toFixed(decimals) : String(value));
 	const thermometer = thermometerKelvins * normal(random);
@@ -93,16 +95,17 @@ export function simulate({
 		open: ({ torr, deviation }) => ({ h_open: text(columnHeight(room - torr) + deviation, 1) })
 	}[instrument];
 	const rows = readings.map((reading) => ({ t: reading.t, ...pressure(reading), note: '' }));
-	if (instrument === 'gauge') return { parameters: { p_b: room.toFixed(1) }, rows };
+	if (instrument === 'gauge') return { parameters: { p_b: room.toFixed(1) }, tables: { readings: rows } };
 	const read = room + barometerTorr * normal(random);
-	return { parameters: { p_b: text(read, 1), t_Hg: mercury.celsius.toFixed(1), scale: 'brass' }, rows };
+	const parameters = { p_b: text(read, 1), t_Hg: mercury.celsius.toFixed(1), scale: 'brass' };
+	return { parameters, tables: { readings: rows } };
 }
 
 const exampleSeed = 310;
 
 if (process.argv[1] === fileURLToPath(import.meta.url)) {
-	const { parameters, rows } = simulate({ seed: exampleSeed });
-	const lines = ['t / °C,p / Torr,note', ...rows.map(({ t, p, note }) => [t, p, note].join(','))];
+	const { parameters, tables } = simulate(exampleSeed);
+	const lines = ['t / °C,p / Torr,note', ...tables.readings.map(({ t, p, note }) => [t, p, note].join(','))];
 	const folder = new URL('./example/', import.meta.url);
 	writeFileSync(new URL('readings.csv', folder), lines.join('\n') + '\n');
 	writeFileSync(new URL('parameters.json', folder), JSON.stringify(parameters, null, '\t') + '\n');

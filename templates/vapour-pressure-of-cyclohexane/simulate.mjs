@@ -36,16 +36,18 @@ function normal(random) {
  * deviations; the thermometer's offset and the gauge's zero are the same in every row. `noise: 0` makes every reading
  * true, `rounded: false` leaves it unrounded.
  */
-export function simulate({
+export function simulate(
 	seed,
-	noise = 1,
-	rounded = true,
-	bathKelvins = 0.03,
-	pressureKilopascals = 0.05,
-	thermometerKelvins = 0.1,
-	zeroKilopascals = 0.03,
-	gain = 0.0005
-}) {
+	{
+		noise = 1,
+		rounded = true,
+		bathKelvins = 0.03,
+		pressureKilopascals = 0.05,
+		thermometerKelvins = 0.1,
+		zeroKilopascals = 0.03,
+		gain = 0.0005
+	} = {}
+) {
 	const random = uniform(seed);
 	const deviation = (size) => noise * size * normal(random);
 	const text = (value, decimals) => (rounded ? value.toFixed(decimals) : String(value));
@@ -72,7 +74,7 @@ export function simulate({
 const exampleSeed = 1946;
 
 if (process.argv[1] === fileURLToPath(import.meta.url)) {
-	const { parameters, tables } = simulate({ seed: exampleSeed });
+	const { parameters, tables } = simulate(exampleSeed);
 	const lines = tables.readings.map(({ direction, t, p }) => [direction, t, p].join(','));
 	const folder = new URL('./example/', import.meta.url);
 	writeFileSync(new URL('readings.csv', folder), ['direction,t / °C,p / kPa', ...lines, ''].join('\n'));

@@ -1,6 +1,15 @@
 import { describe, expect, it } from 'vitest';
 import { evaluate, readTable, type Evaluation, type Readings } from '$lib/worksheets';
-import { bounds, coverage, exampleText, readingsOf, worksheetOf, type Session } from './simulated-session';
+import {
+	bounds,
+	coverage,
+	exampleText,
+	mistaken,
+	readingsOf,
+	statedValues,
+	worksheetOf,
+	type Session
+} from './simulated-session';
 
 interface Options {
 	runs?: number;
@@ -323,6 +332,79 @@ describe('the example', () => {
 		expect(evaluation.figures['temperatures']?.series).toHaveLength(6);
 		expect(evaluation.figures['fore']?.series).toHaveLength(6);
 		expect(evaluation.figures['late']?.series).toHaveLength(6);
+	});
+});
+
+describe('recognised mistakes', () => {
+	const right = work(exact());
+	const made = (code: string) => evaluate(mistaken(worksheet, code), readingsOf(exact()));
+	const perCent = (code: string, name: string) => (value(made(code), name) / value(right, name) - 1) * 100;
+
+	it.each([
+		// 26454 with masses as weighed, naphthalene's buoyancy being 0.09 % (density 1.145 g/mL from memory)
+		['certificate-in-air-alone', 0.09, 2],
+		['no-buoyancy', 0.014, 3],
+		// 26413 is the standard-state value
+		['certificate-standard-state', -0.08, 2],
+		['certificate-in-air', 0.076, 3],
+		['not-reduced', 0.055, 3]
+	])('%s moves the energy by %d %', (code, expected, decimals) => {
+		expect(perCent(code, 'U_std.naphthalene')).toBeCloseTo(expected, decimals);
+	});
+
+	it.each([
+		['volume-work-left-out', 4.958],
+		['volume-work-sign', 2 * 4.958],
+		// two moles of carbon dioxide and water more than oxygen, instead of two fewer
+		['liquid-counted', 4 * 2.479],
+		['joules-beside-kilojoules', -999 * 4.958],
+		['gas-constant-in-calories', 4.958 * (1 - 1.987 / 8.314)]
+	])('%s moves the enthalpy by %d kJ/mol', (code, expected) => {
+		const moved = value(made(code), 'H_c.naphthalene') - value(right, 'H_c.naphthalene');
+		expect(moved / expected).toBeCloseTo(1, 3);
+		expect(value(made(code), 'U_std.naphthalene')).toBeCloseTo(value(right, 'U_std.naphthalene'), 9);
+	});
+
+	it('moves the rise where it is left as it is read, and twice as far where the sign is turned', () => {
+		const rise = (evaluation: Evaluation) => ofRuns(evaluation, 'dT')['N1'] ?? NaN;
+		const exchange = rise(made('ends-of-main-period')) - rise(right);
+		// the calorimeter is above its jacket for most of the main period
+		expect(exchange).toBeLessThan(-0.002);
+		expect((rise(made('drift-sign')) - rise(right)) / exchange).toBeCloseTo(2, 9);
+		// the fore-period's own drift, 6 min of 0.0045 K/min, is counted with the rise
+		expect(rise(made('maximum-minus-minimum')) - rise(right)).toBeGreaterThan(0.02);
+	});
+
+	it('counts the wire that is left, or calories for joules', () => {
+		const burned = (evaluation: Evaluation) => ofRuns(evaluation, 'q_w')['B1'] ?? NaN;
+		expect(burned(made('whole-wire'))).toBeCloseTo(96, 9);
+		expect(burned(made('wire-in-calories')) / burned(right)).toBeCloseTo(2.3 / 9.6, 12);
+		expect(burned(made('wire-left-out'))).toBe(0);
+		const acid = (evaluation: Evaluation) => ofRuns(evaluation, 'q_a')['B1'] ?? NaN;
+		expect(acid(made('acid-in-calories')) / acid(right)).toBeCloseTo(14.1 / 59, 12);
+	});
+
+	it('states too small an uncertainty where the calorimeter is averaged or left out, too large a one with the thermometer', () => {
+		const noisy = simulate(222);
+		const stated = (code: string | null) =>
+			statedValues(code === null ? worksheet : mistaken(worksheet, code), noisy).get('u_H.naphthalene') ??
+			NaN;
+		expect(stated('capacity-as-independent')).toBeLessThan(0.95 * stated(null));
+		expect(stated('capacity-left-out')).toBeLessThan(stated('capacity-as-independent'));
+		expect(stated('thermometer-not-cancelled')).toBeGreaterThan(1.1 * stated(null));
+	});
+
+	it('all change something, and no two the same', () => {
+		const honest = statedValues(worksheet, simulate(222));
+		const kinds = worksheet.mistakes.map(({ code }) => {
+			const wrong = statedValues(mistaken(worksheet, code), simulate(222));
+			const changed = [...honest].filter(
+				([name, each]) => Math.abs((wrong.get(name) ?? NaN) / each - 1) > 1e-6
+			);
+			expect(changed.length, code).toBeGreaterThan(0);
+			return changed.map(([name]) => `${name} ${wrong.get(name)?.toPrecision(6)}`).join('; ');
+		});
+		expect(new Set(kinds).size).toBe(worksheet.mistakes.length);
 	});
 });
 

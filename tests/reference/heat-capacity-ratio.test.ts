@@ -1,6 +1,15 @@
 import { describe, expect, it } from 'vitest';
 import { evaluate, readTable, type Evaluation, type Readings } from '$lib/worksheets';
-import { bounds, coverage, exampleText, readingsOf, worksheetOf, type Session } from './simulated-session';
+import {
+	bounds,
+	coverage,
+	exampleText,
+	mistaken,
+	readingsOf,
+	statedValues,
+	worksheetOf,
+	type Session
+} from './simulated-session';
 
 interface Simulation {
 	simulate: (
@@ -199,6 +208,59 @@ describe('the example', () => {
 	it('has a sample calculation of a trial and of each gas', () => {
 		expect(evaluation.workings['gamma_trial']?.symbolic).toContain('\\ln');
 		expect(evaluation.workings['gamma.argon'] ?? evaluation.workings['gamma']).toBeDefined();
+	});
+});
+
+describe('recognised mistakes', () => {
+	const session = () => exactSession({ argon: 5 / 3, nitrogen: 1.398 });
+	const made = (code: string) => evaluate(mistaken(worksheet, code), readingsOf(session()));
+
+	it.each([
+		// ln 60 / ln(60/16.7) with heights in centimetres, ln 600 / ln(600/167) in millimetres
+		['gauge-logarithms', 'gamma.nitrogen', 3.203, 3],
+		['gauge-logarithms-millimetres', 'gamma.nitrogen', 5.005, 3],
+		['inverted-ratio', 'gamma.nitrogen', 0.715, 3],
+		// the same heights as millimetres of mercury, 13.6 times as much pressure
+		['millimetres-of-mercury', 'gamma.nitrogen', 1.521, 3],
+		['weather-service', 'p_2', 101.19, 9],
+		['weather-service', 'gamma.nitrogen', 1.398 - 1.79 * 0.000116, 5],
+		// 600 / (600 - 167.158)
+		['heights-alone', 'gamma.nitrogen', 1.386, 3],
+		// zero 2 mm: 2 (0.0033 - 0.0009)
+		['zero-left-out', 'gamma.nitrogen', 1.398 + 2 * 0.0024, 4],
+		['heat-capacities-exchanged', 'C_V.argon', 20.786, 3],
+		// 1.987 / (2/3) cal/(mol K)
+		['calories', 'C_V.argon', 2.98, 2]
+	])('%s: %s is %d', (code, name, expected, decimals) => {
+		expect(value(made(code), name)).toBeCloseTo(expected, decimals);
+	});
+
+	it('takes a third pressure before rewarming far down', () => {
+		for (const gas of ['argon', 'nitrogen']) {
+			expect(value(made('before-rewarming'), `gamma.${gas}`)).toBeGreaterThan(1);
+			expect(value(made('before-rewarming'), `gamma.${gas}`)).toBeLessThan(1.2);
+		}
+	});
+
+	it('hardly shows in the ratio where water stands for the fluid, but in the pressures', () => {
+		const right = statedValues(worksheet, session());
+		const wrong = statedValues(mistaken(worksheet, 'millimetres-of-water'), session());
+		const ratio = (name: string) => (wrong.get(name) ?? NaN) / (right.get(name) ?? NaN) - 1;
+		expect(Math.abs(ratio('gamma.nitrogen'))).toBeLessThan(1e-3);
+		expect(ratio('trials trials-1 p_1')).toBeCloseTo((-47 * 9.80665 * 0.56) / 105_150, 5);
+	});
+
+	it('all change something, and no two the same', () => {
+		const right = statedValues(worksheet, simulate(314));
+		const kinds = worksheet.mistakes.map(({ code }) => {
+			const wrong = statedValues(mistaken(worksheet, code), simulate(314));
+			const changed = [...right].filter(
+				([name, each]) => Math.abs((wrong.get(name) ?? NaN) / each - 1) > 1e-6
+			);
+			expect(changed.length, code).toBeGreaterThan(0);
+			return changed.map(([name]) => `${name} ${wrong.get(name)?.toPrecision(6)}`).join('; ');
+		});
+		expect(new Set(kinds).size).toBe(worksheet.mistakes.length);
 	});
 });
 

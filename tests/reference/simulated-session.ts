@@ -4,6 +4,7 @@ import type { Readings, Worksheet } from '$lib/worksheets';
 import { readTemplate } from '$lib/worksheets/authoring';
 import { namedValues } from '../../src/lib/worksheets/named';
 import { Session as WorkedSession } from '../../src/lib/worksheets/session';
+import { withMistake } from '../../src/lib/worksheets/variant';
 
 export interface Session {
 	parameters: Record<string, string>;
@@ -26,6 +27,29 @@ export function readingsOf({ parameters, tables }: Session): Readings {
 		cells.map((row, i) => ({ id: `${name}-${i + 1}`, status: 'used' as const, cells: { ...row } }))
 	]);
 	return { parameters: { ...parameters }, tables: Object.fromEntries(rows) as Readings['tables'] };
+}
+
+/** The worksheet as somebody works it who makes the mistake. */
+export function mistaken(worksheet: Worksheet, code: string): Worksheet {
+	const mistake = worksheet.mistakes.find((candidate) => candidate.code === code);
+	if (!mistake) throw new Error(`There is no mistake ${code}.`);
+	return withMistake(worksheet, mistake);
+}
+
+/** Everything that somebody could state: named values and the computed cells of each row, by name. */
+export function statedValues(worksheet: Worksheet, session: Session): Map<string, number> {
+	const worked = new WorkedSession(worksheet);
+	worked.take(readingsOf(session));
+	const values = new Map(namedValues(worked).map(({ name, quantity }) => [name, quantity.value]));
+	for (const { name, columns } of worksheet.tables) {
+		for (const column of columns.filter(({ formula }) => formula !== null)) {
+			for (const { row, values: cells } of worked.rows.tables.get(name) ?? []) {
+				const cell = cells.get(column.name);
+				if (cell) values.set(`${name} ${row.id} ${column.name}`, cell.value);
+			}
+		}
+	}
+	return values;
 }
 
 /** The text of a file beside the experiment. */

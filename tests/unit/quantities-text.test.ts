@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { formatExpanded, formatQuantity, parseTypedNumber, parseUnit, unitOne } from '$lib/quantities';
+import { formatPlusMinus, formatQuantity, parseTypedNumber, parseUnit, unitOne } from '$lib/quantities';
 
 const thin = '\u2009';
 const minus = '\u2212';
@@ -116,8 +116,8 @@ describe('quantities for reading', () => {
 	});
 
 	it('tells an expanded uncertainty with its unit around both', () => {
-		expect(formatExpanded(41.5951, 0.57, kilojoules).text).toBe(`(41.6 ± 0.6)${thin}kJ/mol`);
-		expect(formatExpanded(1.3984, 0.012, unitOne).text).toBe('1.398 ± 0.012');
+		expect(formatPlusMinus(41.5951, 0.57, kilojoules).text).toBe(`(41.6 ± 0.6)${thin}kJ/mol`);
+		expect(formatPlusMinus(1.3984, 0.012, unitOne).text).toBe('1.398 ± 0.012');
 	});
 
 	it('gives back value and uncertainty to the digits shown', { timeout: 30_000 }, () => {

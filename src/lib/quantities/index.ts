@@ -63,17 +63,22 @@ export { arccosine, arcsine, arctangent, cosine, exp, ln, log10, sine, tangent }
 export { interpolate, maximum, mean, minimum, standardDeviation, sum, uncertaintyOf } from './lists';
 export { correlated, covarianceFrom, covarianceOfMeans, type CovarianceMatrix } from './correlated';
 export { coverageFactor } from './student';
-export { parseTypedNumber, type NumberReading, type TypedNumber } from './parse-number';
 export {
-	formatExpanded,
+	parseTypedNumber,
+	type NumberProblemCode,
+	type NumberReading,
+	type TypedNumber
+} from './parse-number';
+export { parseStated, type StatedProblemCode, type StatedQuantity, type StatedReading } from './parse-stated';
+export { questionAbout, standardOf, type StatedUncertainty } from './stated-kind';
+export {
+	formatPlusMinus,
 	formatQuantity,
 	formatRounded,
 	formatTyped,
 	numberText,
-	placeOfFirstDigit,
-	roundToDigits,
-	roundToUncertainty,
 	withMinus,
-	type DisplayForms,
-	type RoundedNumber
+	type DisplayForms
 } from './format';
+export { describeUncertainty, formatStated, type KnownUncertainty } from './format-stated';
+export { placeOfFirstDigit, roundToDigits, roundToUncertainty, type RoundedNumber } from './rounding';

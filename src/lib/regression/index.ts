@@ -1,5 +1,6 @@
-export { fitLine, lineAt, type LineFit, type LineOptions } from './line';
-export { inversePrediction } from './inverse';
+export { fitLine, lineAt, nextReadingAt, type LineFit, type LineOptions } from './line';
+export { fitBothAxes, type BothAxesFit } from './both-axes';
+export { inverseInterval, inversePrediction, type InverseOptions } from './inverse';
 export { fitLinear } from './linear';
 export { fitPolynomial } from './polynomial';
 export { fitNonlinear } from './nonlinear';

@@ -1,11 +1,64 @@
-import { divide, subtract, type Quantity } from '$lib/quantities';
+import {
+	combinedUncertainty,
+	coverageFactor,
+	covariance,
+	divide,
+	subtract,
+	variance,
+	withDeviations,
+	type Component,
+	type Quantity
+} from '$lib/quantities';
 import type { LineFit } from './line';
+
+export interface InverseOptions {
+	/** `y` is the mean of so many new readings that scatter as the fit's own points do (unit weight, policy 'scatter') */
+	newReadings?: number;
+}
 
 /**
  * The x at which the line reaches y: (y - intercept) / slope, with slope and intercept correlated as the fit left
- * them. A y that is exactly known (a standard pressure) adds nothing, and no scatter of a new reading is added either:
- * the question is where the line passes, not where the next reading would fall.
+ * them. A y that is exactly known (a standard pressure) adds nothing, and no scatter of a new reading is added either
+ * unless asked for: the question is where the line passes, not where the next reading would fall.
  */
-export function inversePrediction(fit: LineFit, y: Quantity): Quantity {
-	return divide(subtract(y, fit.intercept), fit.slope);
+export function inversePrediction(fit: LineFit, y: Quantity, options: InverseOptions = {}): Quantity {
+	return divide(subtract(scattered(fit, y, options), fit.intercept), fit.slope);
+}
+
+/** A new reading's scatter rests on the same variance estimate as the line's. */
+function scattered(fit: LineFit, y: Quantity, { newReadings }: InverseOptions): Quantity {
+	const component = scatterOf(fit);
+	const deviation = fit.residualStandardDeviation;
+	if (!newReadings || !component || deviation === null) return y;
+	return withDeviations(y, [[{ component }, deviation / Math.sqrt(newReadings)]]);
+}
+
+function scatterOf(fit: LineFit): Component | undefined {
+	return [...fit.slope.parts.keys()].find(({ component }) => component.id === `${fit.id}:scatter`)?.component;
+}
+
+/**
+ * The interval of x (SI) in which the line reaches y with the probability given, for a slope of any uncertainty
+ * (Fieller 1954): all x at which the line's height differs from y by less than its expanded uncertainty. It is not
+ * symmetric about the estimate; null where the slope may be zero, so that the interval has no end.
+ */
+export function inverseInterval(
+	fit: LineFit,
+	y: Quantity,
+	probability: number,
+	options: InverseOptions = {}
+): { low: number; high: number } | null {
+	const target = scattered(fit, y, options);
+	const estimate = inversePrediction(fit, y, options);
+	// height over the target at the centre, and how it varies with the slope
+	const above = subtract(fit.centre, { ...target, point: false, unit: fit.centre.unit });
+	const factor = coverageFactor(probability, combinedUncertainty(estimate).degreesOfFreedom);
+	const t2 = factor * factor;
+	const slope = fit.slope.value;
+	const a = slope * slope - t2 * variance(fit.slope);
+	const b = above.value * slope - t2 * covariance(above, fit.slope);
+	const c = above.value * above.value - t2 * variance(above);
+	if (!(a > 0)) return null;
+	const root = Math.sqrt(Math.max(0, b * b - a * c));
+	return { low: fit.centreX + (-b - root) / a, high: fit.centreX + (-b + root) / a };
 }

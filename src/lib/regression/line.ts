@@ -21,6 +21,8 @@ export interface LineOptions extends FitOptions {
 }
 
 export interface LineFit {
+	/** of the fit's options; the component of its scatter is this and `:scatter` */
+	readonly id: string;
 	readonly points: number;
 	readonly degreesOfFreedom: number;
 	readonly policy: FitPolicy;
@@ -106,6 +108,7 @@ export function fitLine(x: readonly Quantity[], y: readonly Quantity[], options:
 		addPart(slopeParts, scattered[1] ?? { component }, deviation / Math.sqrt(sums.xx));
 	}
 	return {
+		id: options.id,
 		points: xs.length,
 		degreesOfFreedom,
 		policy: options.policy,
@@ -191,6 +194,15 @@ function requireEnough(xs: readonly number[], policy: FitPolicy, through: Throug
  * hundredth x as at the first, however many readings stand behind the line.
  */
 export function lineAt(fit: LineFit): (x: number) => { value: number } & Uncertainty {
+	return bandOf(fit, 0);
+}
+
+/** Where another reading of unit weight would fall: the line's own uncertainty and the scatter about it (policy 'scatter'). */
+export function nextReadingAt(fit: LineFit): (x: number) => { value: number } & Uncertainty {
+	return bandOf(fit, fit.policy === 'scatter' ? (fit.residualStandardDeviation ?? 0) ** 2 : 0);
+}
+
+function bandOf(fit: LineFit, scatter: number): (x: number) => { value: number } & Uncertainty {
 	const heights = componentVariances(fit.centre.parts);
 	const slopes = componentVariances(fit.slope.parts);
 	const mixed = new Map<Component, number>();
@@ -205,7 +217,8 @@ export function lineAt(fit: LineFit): (x: number) => { value: number } & Uncerta
 			const size =
 				(heights.get(component) ?? 0) +
 				2 * dx * (mixed.get(component) ?? 0) +
-				dx * dx * (slopes.get(component) ?? 0);
+				dx * dx * (slopes.get(component) ?? 0) +
+				(component.id === `${fit.id}:scatter` ? scatter : 0);
 			variances.set(component, Math.max(0, size));
 		}
 		return { value: fit.centre.value + fit.slope.value * dx, ...combineVariances(variances) };

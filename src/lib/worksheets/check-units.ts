@@ -69,6 +69,25 @@ export function checkUnits(worksheet: Worksheet, fail: Fail): void {
 	});
 }
 
+/** What does not fit in the units of one formula; null where it yields the unit wanted. */
+export function checkFormulaUnit(worksheet: Worksheet, formula: Formula, unit: string): string | null {
+	const surroundings = standIns(worksheet);
+	try {
+		for (const branch of branchesOf(formula)) {
+			try {
+				toldIn(evaluateFormula(branch, surroundings), parseUnit(unit));
+			} catch (cause) {
+				// a domain depends on values, and these are none
+				if (!(cause instanceof QuantityProblem) || cause.code !== 'domain') throw cause;
+			}
+		}
+		return null;
+	} catch (cause) {
+		if (!(cause instanceof QuantityProblem)) throw cause;
+		return cause.message;
+	}
+}
+
 function checkFit(
 	worksheet: Worksheet,
 	fit: FitDefinition,

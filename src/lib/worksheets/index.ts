@@ -5,5 +5,8 @@
 export type * from './types';
 export { evaluate, Evaluator, workingsFor } from './evaluate';
 export { engineVersion } from './engine-version';
+export { compareOwn, computedNames, ownWorksheet, type OwnComparison, type OwnStep } from './own-workings';
+export { checkStated, type StatedValue, type StatedVerdict } from './stated-value';
 export { readTable } from './read-table';
 export { splitDelimited } from './delimited';
+export { evaluationFromStored, fromStored, type StoredEvaluation, type StoredWorksheet } from './stored';

@@ -89,8 +89,7 @@ export class Rows {
 			if (!same || this.parentChanged(table, state, keys)) {
 				const parents = [...state.parents.values()];
 				readRow(state, table, { number: i + 1, parents: keys, isParent, twice }, sources);
-				// a row that went elsewhere is missed where it was
-				for (const parent of parents) if (state.parents.get(parent.table) !== parent) this.mark(parent);
+				this.follow(table.name, state, parents);
 				this.mark(state);
 				if (state.unknown.length > 0) this.unknown.add(state);
 				else this.unknown.delete(state);
@@ -105,8 +104,19 @@ export class Rows {
 			for (const parent of gone.parents.values()) this.mark(parent);
 		}
 		this.tables.set(table.name, after);
-		for (const pair of this.families.keys())
-			if (pair.startsWith(`${table.name} `)) this.families.delete(pair);
+		this.forgetFamilies(table.name);
+	}
+
+	/** A row that went elsewhere is missed where it was. */
+	private follow(table: string, state: RowState, before: readonly RowState[]): void {
+		const after = [...state.parents.values()];
+		if (after.length === before.length && after.every((parent, i) => parent === before[i])) return;
+		this.forgetFamilies(table);
+		for (const parent of before) if (!after.includes(parent)) this.mark(parent);
+	}
+
+	private forgetFamilies(table: string): void {
+		for (const pair of this.families.keys()) if (pair.startsWith(`${table} `)) this.families.delete(pair);
 	}
 
 	/** Whether the row belongs to another row than before, or to one that was itself read anew. */
@@ -115,17 +125,11 @@ export class Rows {
 		state: RowState,
 		keys: ReadonlyMap<string, ReadonlyMap<string, RowState>>
 	): boolean {
-		for (const { of, name } of table.columns) {
-			if (of === null) continue;
+		return table.columns.some(({ of, name }) => {
+			if (of === null) return false;
 			const parent = keys.get(of)?.get(textOf(state.row.cells, name).trim());
-			if (parent !== state.parents.get(of)) {
-				for (const pair of this.families.keys())
-					if (pair.startsWith(`${table.name} `)) this.families.delete(pair);
-				return true;
-			}
-			if (parent && this.changedIn(of).has(parent)) return true;
-		}
-		return false;
+			return parent !== state.parents.get(of) || (parent !== undefined && this.changedIn(of).has(parent));
+		});
 	}
 
 	private byKey({ name }: TableDefinition, key: string): Map<string, RowState> {

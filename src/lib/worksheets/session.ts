@@ -189,9 +189,12 @@ export class Session {
 				const elsewhere =
 					node.op === 'over' || node.op === 'column' || node.op === 'cell' ? node.table : table;
 				if (elsewhere === table && node.op !== 'over') continue;
-				for (const changed of this.touchedBy(elsewhere, table)) {
-					if (changed === null) return all;
-					touched.add(changed);
+				for (const other of elsewhere === table ? [table, ...this.rows.ancestorsOf(table)] : [elsewhere]) {
+					// a row that left its family shows in the head that it left
+					for (const changed of this.touchedBy(other, table)) {
+						if (changed === null) return all;
+						touched.add(changed);
+					}
 				}
 			}
 		}

@@ -19,18 +19,25 @@ export function correlated(
 	component: Component
 ): Quantity[] {
 	requireMatrix(covariances, quantities.length);
-	const deviations = quantities.map((_, i) => Math.sqrt(covariances[i]?.[i] ?? 0));
+	const factor = covarianceFactor(covariances);
+	const sources: Source[] = (factor[0] ?? []).map(() => ({ component }));
+	return quantities.map(
+		(quantity, i) =>
+		withDeviations(quantity, sources.map((source, j) => [source, factor[i]?.[j] ?? 0] as const)) // prettier-ignore
+	);
+}
+
+/**
+ * A factor F of a covariance matrix F F'. It has fewer columns than rows where quantities are fully correlated.
+ * @throws QuantityProblem where no quantities can have these covariances
+ */
+export function covarianceFactor(covariances: CovarianceMatrix): number[][] {
+	requireMatrix(covariances, covariances.length);
+	const deviations = covariances.map((row, i) => Math.sqrt(row[i] ?? 0));
 	const correlations = covariances.map((row, i) =>
 		row.map((each, j) => scaled(each, deviations[i], deviations[j]))
 	);
-	const factor = choleskyFactor(correlations);
-	const sources: Source[] = (factor[0] ?? []).map(() => ({ component }));
-	return quantities.map((quantity, i) =>
-		withDeviations(
-			quantity,
-			sources.map((source, j) => [source, (factor[i]?.[j] ?? 0) * (deviations[i] ?? 0)] as const)
-		)
-	);
+	return choleskyFactor(correlations).map((row, i) => row.map((each) => each * (deviations[i] ?? 0)));
 }
 
 /** Covariance matrix of the means of simultaneous readings: one row of `series` a quantity (GUM 5.2.3, equation 17). */

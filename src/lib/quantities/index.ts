@@ -61,7 +61,24 @@ export {
 } from './operations';
 export { arccosine, arcsine, arctangent, cosine, exp, ln, log10, sine, tangent } from './functions';
 export { interpolate, maximum, mean, minimum, standardDeviation, sum, uncertaintyOf } from './lists';
-export { correlated, covarianceFrom, covarianceOfMeans, type CovarianceMatrix } from './correlated';
+export {
+	correlated,
+	covarianceFactor,
+	covarianceFrom,
+	covarianceOfMeans,
+	type CovarianceMatrix
+} from './correlated';
+export { draw, requireDistribution, standardDeviationOf, type Distribution } from './distributions';
+export {
+	independent,
+	jointlyNormal,
+	monteCarlo,
+	type Interval,
+	type MonteCarloOptions,
+	type MonteCarloResult,
+	type Sampler
+} from './monte-carlo';
+export { randomSource, Xoshiro128, type RandomSource } from './random';
 export { coverageFactor } from './student';
 export {
 	parseTypedNumber,

@@ -6,6 +6,7 @@ export type QuantityProblemCode =
 	| 'temperature-points'
 	| 'domain'
 	| 'covariance'
+	| 'distribution'
 	| 'not-finite';
 
 /** Something that cannot be computed, said in words a student understands. The only error that this module throws. */

@@ -39,7 +39,7 @@ export function evaluation(): Evaluation {
 		problems: [],
 		quantities: Object.fromEntries(values.map((value) => [value.name, value])),
 		tables: { readings: { name: 'readings', caption: 'Readings', columns: [], rows: [] } },
-		fits: { line: { name: 'line', parameters: { slope, intercept } } as ShownFit },
+		fits: { line: { name: 'line', model: 'line', parameters: [slope, intercept] } as ShownFit },
 		comparisons: {
 			H_vap: {
 				name: 'H_vap',

@@ -7,7 +7,7 @@ import {
 	suggestForNumber,
 	suggestLinks
 } from '$lib/reports';
-import type { Evaluation } from '$lib/worksheets';
+import type { Evaluation, ShownComparison } from '$lib/worksheets';
 import { elementsOf, evaluation, quantity } from './reports-fixture';
 
 const known = evaluation();
@@ -114,7 +114,7 @@ describe('links inside prose', () => {
 		const made = html('Is :value[Hvap].');
 		expect(made).toContain('<span class="unknown-link" data-name="Hvap" data-run="\uFFFC"><code>Hvap</code>');
 		expect(made).toContain(
-			'No value named Hvap. Nearest: H_vap. There are: H_vap, T_b, p_b, line.slope, line.intercept.'
+			'No value named Hvap. Nearest: H_vap. There are: H_vap, line.slope, line.intercept, T_b, p_b.'
 		);
 		expect(html(':value[zzz]')).not.toContain('Nearest');
 		const many = {
@@ -256,6 +256,47 @@ describe('suggestLinks', () => {
 			display: '373.5(3) K',
 			insert: ':value[T_b]'
 		});
+	});
+
+	it('knows values by row, results before what was typed, and names them by their key', () => {
+		const grouped = evaluation();
+		grouped.quantities = {
+			p_b: quantity('p_b', 99.4, null, 'kPa', '99.4 kPa', 'Barometric pressure'),
+			'gamma.argon': quantity('gamma.argon', 1.63, 0.01, '1', '1.633(4)', 'Ratio, argon'),
+			'gamma.nitrogen': quantity('gamma.nitrogen', 1.386, 0.004, '1', '1.386(4)', 'Ratio, nitrogen'),
+			'H_c.benzoic-acid': quantity('H_c.benzoic-acid', -3227, 2, 'kJ/mol', '−3227(2) kJ/mol', 'Enthalpy')
+		};
+		grouped.comparisons = {
+			'gamma.argon': {
+				name: 'gamma',
+				group: 'argon',
+				quantity: 'gamma',
+				sentence: 'Measured 1.633(4).'
+			} as ShownComparison
+		};
+		const links = suggestLinks(grouped, '');
+		expect(links.filter(({ kind }) => kind === 'value').map(({ name }) => name)).toEqual([
+			'gamma.argon',
+			'gamma.nitrogen',
+			'line.slope',
+			'line.intercept',
+			'p_b',
+			'H_c.benzoic-acid'
+		]);
+		expect(links.find(({ kind }) => kind === 'comparison')).toMatchObject({
+			insert: '::comparison[gamma.argon]',
+			label: 'Ratio, argon: Measured 1.633(4).'
+		});
+		const section = renderSection(':value[H_c.benzoic-acid] and :value[gamma]\n\n::comparison[gamma.argon]', {
+			evaluation: grouped,
+			sectionNumber: 1
+		});
+		expect(section.blocks[0]).toMatchObject({ kind: 'prose' });
+		expect(JSON.stringify(section.blocks[0])).toContain('−3227(2)');
+		expect(JSON.stringify(section.blocks[0])).toContain(
+			'gamma has a value for each row: gamma.argon, gamma.nitrogen.'
+		);
+		expect(section.blocks[1]).toMatchObject({ kind: 'comparison', name: 'gamma.argon', known: true });
 	});
 
 	it('knows a number that the workings know', () => {

@@ -267,7 +267,7 @@ describe('checkReport', () => {
 	it('finds links to names that do not exist', () => {
 		expect(check({ results: 'A :value[Hvap].\n\n::figure[lin]' })[0]).toEqual([
 			'open figure-mentioned 1.2: Nobody mentions Figure 1. Say what it shows.',
-			'open link-known 1.1: No value named Hvap. Nearest: H_vap. There are: H_vap, T_b, p_b, line.slope, line.intercept.',
+			'open link-known 1.1: No value named Hvap. Nearest: H_vap. There are: H_vap, line.slope, line.intercept, T_b, p_b.',
 			'open link-known 1.2: No figure named lin. There is: line.'
 		]);
 		expect(check({ results: 'A :value[T_b] :value[H_vap].' })[0]?.[1]).toBe(

@@ -2,13 +2,28 @@ import { readdirSync, readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { recompute } from '../../src/lib/server/reports/recompute';
 import type { Snapshot } from '../../src/lib/server/reports/manifest';
-import { engineVersion } from '$lib/worksheets';
+import {
+	engineVersion,
+	evaluationFromStored,
+	fromStored,
+	type StoredEvaluation,
+	type StoredWorksheet
+} from '$lib/worksheets';
 
 type Golden = Pick<Snapshot, 'engine' | 'worksheet' | 'readings' | 'evaluation'>;
 const folder = new URL('../golden/', import.meta.url).pathname;
 const goldens = readdirSync(folder)
 	.filter((name) => name.endsWith('.json'))
-	.map((name): [string, Golden] => [name, JSON.parse(readFileSync(folder + name, 'utf8')) as Golden]);
+	.map((name): [string, Golden] => {
+		const { worksheet, evaluation, ...rest } = JSON.parse(readFileSync(folder + name, 'utf8')) as Omit<
+			Golden,
+			'worksheet' | 'evaluation'
+		> & { worksheet: StoredWorksheet; evaluation: StoredEvaluation };
+		return [
+			name,
+			{ ...rest, worksheet: fromStored(worksheet), evaluation: evaluationFromStored(evaluation) }
+		];
+	});
 
 describe('golden snapshots', () => {
 	it('has one of the present engine: a change of any number needs a new version and a new golden', () => {

@@ -1,11 +1,6 @@
 export { makeAxis, onAxis, type Axis, type AxisOptions, type Tick } from './axis';
-export {
-	describePlot,
-	type LinePlotData,
-	type LinePlotPoint,
-	type PlotDescription,
-	type PlotMark
-} from './line-plot';
+export { describePlot } from './line-plot';
+export type { LinePlotData, LinePlotPoint, PlotDescription, PlotMark, PlotSeries } from './plot-types';
 export {
 	describeHistogram,
 	describeStrip,

@@ -33,20 +33,54 @@ export function placedLabel(kind: PlacedKind, number: number | undefined): strin
 	return number === undefined ? labels[kind] : `${labels[kind]} ${number}`;
 }
 
-/** Every value that can be linked: results, and the slope and intercept of each fit as 'line.slope'. */
-export function linkableValues(evaluation: Evaluation): Map<string, ShownQuantity> {
+const valuesKept = new WeakMap<Evaluation, Map<string, ShownQuantity>>();
+
+/**
+ * Every value that a link can name, in the experiment's order: 'H_vap', 'gamma.argon'. The slope and intercept of a
+ * straight line are also known as 'line.slope' and 'line.intercept'.
+ */
+export function linkableValues(evaluation: Evaluation): ReadonlyMap<string, ShownQuantity> {
+	const known = valuesKept.get(evaluation);
+	if (known) return known;
 	const values = new Map(Object.entries(evaluation.quantities));
-	for (const [fit, shown] of Object.entries(evaluation.fits)) {
-		for (const part of ['slope', 'intercept'] as const) {
-			const name = `${fit}.${part}`;
-			if (!values.has(name)) values.set(name, shown.parameters[part]);
-		}
-	}
+	for (const [name, quantity] of linesByPart(evaluation)) if (!values.has(name)) values.set(name, quantity);
+	valuesKept.set(evaluation, values);
 	return values;
 }
 
+function linesByPart({ fits }: Evaluation): [string, ShownQuantity][] {
+	return Object.entries(fits).flatMap(([fit, { model, parameters }]) => {
+		if (model !== 'line' && model !== 'both-axes' && model !== 'origin') return [];
+		return parameters
+			.slice(0, 2)
+			.map((quantity, i): [string, ShownQuantity] => [`${fit}.${i === 0 ? 'slope' : 'intercept'}`, quantity]);
+	});
+}
+
+/**
+ * The values as they are offered: what is compared with the literature first, then other results, what was fitted, and at
+ * last what was typed or is constant. Each under one name.
+ */
+export function offeredValues(evaluation: Evaluation): [string, ShownQuantity][] {
+	const { quantities, comparisons, fits, workings } = evaluation;
+	const compared = new Set(Object.values(comparisons).map(({ quantity }) => quantity));
+	const fitted = new Set(Object.values(fits).flatMap(({ parameters }) => parameters.map(({ name }) => name)));
+	const rank = (name: string) => {
+		if (fitted.has(name) || !Object.hasOwn(quantities, name)) return 2;
+		const own = name.split('.')[0] ?? name;
+		return compared.has(own) ? 0 : Object.hasOwn(workings, name) ? 1 : 3;
+	};
+	return [...linkableValues(evaluation)]
+		.filter(
+			([name, quantity]) => Object.hasOwn(quantities, name) || !Object.hasOwn(quantities, quantity.name)
+		)
+		.map((entry, index) => ({ entry, index, rank: rank(entry[0]) }))
+		.sort((a, b) => a.rank - b.rank || a.index - b.index)
+		.map(({ entry }) => entry);
+}
+
 export function namesOf(evaluation: Evaluation, kind: LinkKind): string[] {
-	if (kind === 'value') return [...linkableValues(evaluation).keys()];
+	if (kind === 'value') return offeredValues(evaluation).map(([name]) => name);
 	return Object.keys(placedOf(evaluation, kind));
 }
 
@@ -71,6 +105,16 @@ export function explainUnknown(evaluation: Evaluation | null, kind: LinkKind, na
 	const names = namesOf(evaluation, kind);
 	const missing = name === '' ? `This link names no ${noun.one}.` : `No ${noun.one} named ${name}.`;
 	if (names.length === 0) return { message: `${missing} There are no ${noun.many} yet.`, nearest: null };
+	const byRow =
+		name === ''
+			? []
+			: names.filter(
+					(each) =>
+						each.startsWith(`${name}.`) && (kind !== 'value' || Object.hasOwn(evaluation.quantities, each))
+				);
+	if (byRow[0] !== undefined) {
+		return { message: `${name} has a ${noun.one} for each row: ${listed(byRow)}.`, nearest: byRow[0] };
+	}
 	const nearest = nearestName(name, names);
 	const parts = [missing];
 	const elsewhere = otherKind(evaluation, kind, name);
@@ -80,9 +124,28 @@ export function explainUnknown(evaluation: Evaluation | null, kind: LinkKind, na
 	return { message: parts.join(' '), nearest };
 }
 
+/** Names in a row that differ by their key alone are told as a span: 'k.a to k.e'. */
 function listed(names: string[]): string {
-	if (names.length <= namesShown) return names.join(', ');
-	return `${names.slice(0, namesShown).join(', ')} and ${names.length - namesShown} more`;
+	const spans: { first: string; last: string; count: number }[] = [];
+	for (const name of names) {
+		const before = spans.at(-1);
+		const own = /^(.*)\.[^.]*$/.exec(name)?.[1];
+		if (
+			before &&
+			own !== undefined &&
+			before.first.startsWith(`${own}.`) &&
+			!before.first.slice(own.length + 1).includes('.')
+		) {
+			before.last = name;
+			before.count += 1;
+		} else spans.push({ first: name, last: name, count: 1 });
+	}
+	const texts = spans.map(({ first, last, count }) =>
+		count === 1 ? first : `${first}${count === 2 ? ', ' : ' to '}${last}`
+	);
+	if (texts.length <= namesShown) return texts.join(', ');
+	const left = spans.slice(namesShown).reduce((sum, { count }) => sum + count, 0);
+	return `${texts.slice(0, namesShown).join(', ')} and ${left} more`;
 }
 
 function otherKind(evaluation: Evaluation, kind: LinkKind, name: string): string | null {

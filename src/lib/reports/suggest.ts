@@ -1,6 +1,6 @@
-import type { Evaluation } from '$lib/worksheets';
+import type { Evaluation, ShownComparison } from '$lib/worksheets';
 import { compareStated } from './compare';
-import { linkableValues } from './links';
+import { offeredValues } from './links';
 import type { LinkKind } from './types';
 
 /** One line of the editor's completion. */
@@ -46,7 +46,7 @@ function allLinks(evaluation: Evaluation): LinkSuggestion[] {
 		insert: `::${kind}[${name}]`
 	});
 	return [
-		...[...linkableValues(evaluation)].map(([name, quantity]): LinkSuggestion => ({
+		...offeredValues(evaluation).map(([name, quantity]): LinkSuggestion => ({
 			kind: 'value',
 			name,
 			label: quantity.label,
@@ -57,9 +57,20 @@ function allLinks(evaluation: Evaluation): LinkSuggestion[] {
 		...Object.entries(evaluation.tables).map(([name, table]) => placed('table', name, table.caption)),
 		...Object.entries(evaluation.workings).map(([name, sample]) => placed('workings', name, sample.title)),
 		...Object.entries(evaluation.comparisons).map(([name, comparison]) =>
-			placed('comparison', name, comparison.sentence)
+			placed('comparison', name, comparedLabel(evaluation, name, comparison))
 		)
 	];
+}
+
+/** 'Heat capacity ratio, argon: Measured …': the sentence alone does not say of what. */
+function comparedLabel(
+	{ quantities }: Evaluation,
+	name: string,
+	{ quantity, sentence, group }: ShownComparison
+): string {
+	const key = group === undefined ? '' : name.slice(name.lastIndexOf('.'));
+	const label = quantities[`${quantity}${key}`]?.label;
+	return label === undefined ? sentence : `${label}: ${sentence}`;
 }
 
 function rankOf({ name, label }: LinkSuggestion, wanted: string): number | null {

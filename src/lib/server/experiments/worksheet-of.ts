@@ -1,5 +1,5 @@
 import { asc, eq } from 'drizzle-orm';
-import type { Worksheet } from '$lib/worksheets';
+import { fromStored, type StoredWorksheet, type Worksheet } from '$lib/worksheets';
 import { schema, type Database, type Transaction } from '../db';
 import { notFound } from '../errors';
 
@@ -18,7 +18,7 @@ async function worksheetOfVersion(db: Database | Transaction, versionId: string)
 		.innerJoin(parts, eq(parts.sha256, experimentVersions.part))
 		.where(eq(experimentVersions.id, versionId));
 	if (!row?.bytes) throw notFound();
-	const worksheet = JSON.parse(Buffer.from(row.bytes).toString('utf8')) as Worksheet;
+	const worksheet = fromStored(JSON.parse(Buffer.from(row.bytes).toString('utf8')) as StoredWorksheet);
 	if (cache.size >= cacheLimit) cache.delete(cache.keys().next().value ?? '');
 	cache.set(versionId, worksheet);
 	return worksheet;

@@ -1,5 +1,11 @@
 import { eq, inArray, sql } from 'drizzle-orm';
-import type { Evaluation, Readings, Worksheet } from '$lib/worksheets';
+import {
+	evaluationFromStored,
+	fromStored,
+	type Readings,
+	type StoredEvaluation,
+	type StoredWorksheet
+} from '$lib/worksheets';
 import { schema, type Database, type Transaction } from '../db';
 import { notFound } from '../errors';
 import { hex, sha256 } from './canonical';
@@ -54,8 +60,8 @@ export async function readSnapshot(db: Database | Transaction, snapshotId: strin
 			text: reader.json<string>(part, `section ${position}`)
 		})),
 		readings: reader.json<Readings>(readings, 'readings'),
-		worksheet: reader.json<Worksheet>(worksheet, 'worksheet'),
-		evaluation: reader.json<Evaluation>(evaluation, 'evaluation')
+		worksheet: fromStored(reader.json<StoredWorksheet>(worksheet, 'worksheet')),
+		evaluation: evaluationFromStored(reader.json<StoredEvaluation>(evaluation, 'evaluation'))
 	};
 }
 

@@ -16,6 +16,7 @@ import { sections, teams, type DemoTeam } from './people';
 import { insertCourse, type DemoCourse } from './people-in-database';
 import { seededRandom, type SeededRandom } from './random';
 import { simulateReadings } from './readings';
+import { loadRotation } from './rotation';
 import { writeReport, writeTeamSections } from './texts';
 
 export { demoAccounts } from './accounts';
@@ -205,4 +206,5 @@ export async function loadDemo(say: (text: string) => void = (text) => console.l
 			byId: appealed.author.id
 		});
 	}
+	await loadRotation(course, { now, zone, instructor: instructor.id, say });
 }

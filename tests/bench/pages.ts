@@ -58,10 +58,10 @@ async function places(): Promise<Place[]> {
 	};
 	const student = await person('ines.okafor');
 	const work = await one(
-		"select w.id as v from work w join teams t on t.id = w.team_id where t.name = 'Linden'"
+		"select w.id as v from work w join teams t on t.id = w.team_id join assignments a on a.id = w.assignment_id where t.name = 'Linden' and a.position = 1"
 	);
 	const alias = await one(
-		"select r.alias as v from reports r join work w on w.id = r.work_id join teams t on t.id = w.team_id where t.name = 'Maple' limit 1"
+		"select r.alias as v from reports r join work w on w.id = r.work_id join teams t on t.id = w.team_id join assignments a on a.id = w.assignment_id where t.name = 'Maple' and a.position = 1 limit 1"
 	);
 	return [
 		{ name: 'now', path: '/now', cookie: student },

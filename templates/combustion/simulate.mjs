@@ -91,14 +91,16 @@ export function simulate(
 		main = 12,
 		late = 8,
 		step = 0.25,
-		...other
+		lag = truth.lag,
+		cooling = truth.cooling,
+		stirring = truth.stirring
 	} = {}
 ) {
 	const random = uniform(seed);
 	const deviation = (size) => noise * size * normal(random);
 	const written = (value, decimals) => (digits ? value.toFixed(decimals) : String(value));
 	const graduated = (value, division) => (digits ? Math.round(value / division) * division : value);
-	const real = { ...truth, ...other };
+	const real = { ...truth, lag, cooling, stirring };
 
 	const slope = 1 + deviation(0.001);
 	const certificate = real.certificate + deviation(1.5);

@@ -33,10 +33,19 @@ interface Curve {
 	start: number;
 	firing: number;
 }
+interface Conditions {
+	grams: number;
+	molarMass: number;
+	carbon: number;
+	hydrogen: number;
+	oxygen: number;
+	atmospheres: number;
+	litres: number;
+}
 interface Simulation {
 	simulate: (seed: number, options?: Options) => Session;
 	temperature: (curve: Curve) => (minutes: number) => number;
-	reduction: (conditions: Record<string, number>) => number;
+	reduction: (conditions: Conditions) => number;
 	truth: { heatCapacity: number; standardEnergy: number; molarEnergy: number };
 }
 const { simulate, temperature, reduction, truth } =

@@ -2,7 +2,16 @@ import { describe, expect, it } from 'vitest';
 import { combinedUncertainty, type Quantity } from '$lib/quantities';
 import { evaluate, type Evaluation } from '$lib/worksheets';
 import { Session as Work } from '../../src/lib/worksheets/session';
-import { bounds, draws, holds, readingsOf, worksheetOf, type Session } from './simulated-session';
+import {
+	bounds,
+	draws,
+	holds,
+	mistaken,
+	readingsOf,
+	statedValues,
+	worksheetOf,
+	type Session
+} from './simulated-session';
 
 interface Simulation {
 	simulate: (
@@ -215,6 +224,47 @@ describe('published values', () => {
 	});
 });
 
+describe('recognised mistakes', () => {
+	const right = work(exact());
+	const made = (code: string) => evaluate(mistaken(worksheet, code), readingsOf(exact()));
+
+	it.each([
+		['decadic-logarithm', 'k.c', 1 / Math.LN10],
+		['decadic-logarithm', 'k_H', 1 / Math.LN10],
+		// twice the concentration, half the slope
+		['stock-concentration', 'k_H', 0.5],
+		['stock-concentration', 'k_0', 1],
+		['centimetres', 'A_eq', 0.1],
+		['seconds-for-minutes', 'k.e', 1 / 60],
+		['one-direction', 'k_1.a', 2.75 / 1.75],
+		['one-direction', 'k_1_0', 2.75 / 1.75],
+		// without noise weights change nothing
+		['unweighted', 'k.b', 1],
+		// 0.04 degrees in 10.54
+		['blank-left-on', 'A_eq', 10.58 / 10.54],
+		['temperature-left-out', 'k_0', 1]
+	])('%s changes %s by a factor of %d', (code, name, factor) => {
+		expectDigits(value(made(code), name) / value(right, name), factor, 8);
+	});
+
+	it('the last reading taken as the final angle makes k far too large', () => {
+		expect(value(made('last-reading-as-final'), 'k.c') / value(right, 'k.c')).toBeGreaterThan(1.2);
+	});
+
+	it('all change something with real readings, and no two the same', () => {
+		const plain = statedValues(worksheet, simulate(2104));
+		const kinds = worksheet.mistakes.map(({ code }) => {
+			const wrong = statedValues(mistaken(worksheet, code), simulate(2104));
+			const changed = [...plain].filter(
+				([name, each]) => Math.abs((wrong.get(name) ?? NaN) / each - 1) > 1e-6
+			);
+			expect(changed.length, code).toBeGreaterThan(0);
+			return changed.map(([name]) => `${name} ${wrong.get(name)?.toPrecision(6)}`).join('; ');
+		});
+		expect(new Set(kinds).size).toBe(worksheet.mistakes.length);
+	});
+});
+
 describe('uncertainty and coverage', () => {
 	/** Marsaglia's xorshift32 with a Box-Muller pair: independent of every generator in the product. */
 	function normals(start: number): () => number {
@@ -264,8 +314,14 @@ describe('uncertainty and coverage', () => {
 				`${name}: covered ${((100 * (held[name] ?? 0)) / drawn).toFixed(2)} %, mean relative u ${((100 * (relative[name] ?? 0)) / drawn).toFixed(2)} % (${drawn} draws)`
 			);
 		}
+		// Expected: within a run about 0.6 %, k0 1.9 %, kH 1.4 % by the runs' temperatures and 0.5 % by the acid.
+		const size = (name: string) => (relative[name] ?? 0) / drawn;
+		expect(size('k_line')).toBeGreaterThan(0.0045);
+		expect(size('k_line')).toBeLessThan(0.0065);
+		expect(size('k_0') / 0.019).toBeCloseTo(1, 1);
+		expect(size('k_H') / Math.hypot(0.014, 0.005)).toBeCloseTo(1, 1);
 		const [low, high] = bounds(0.94, 0.96, drawn);
-		for (const name of single) {
+		for (const name of [...single, ...methods]) {
 			expect((held[name] ?? 0) / drawn, name).toBeGreaterThan(low);
 			expect((held[name] ?? 0) / drawn, name).toBeLessThan(high);
 		}

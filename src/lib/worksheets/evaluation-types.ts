@@ -77,6 +77,8 @@ export interface ShownColumn {
 	symbol: string;
 	unit: string;
 	unitHtml: string;
+	/** absent in what older engines said: a number */
+	kind?: 'number' | 'text' | 'choice';
 	computed: boolean;
 	resolution: string | null;
 }
@@ -145,6 +147,8 @@ export interface FigureData {
 	y: { label: string; symbol: string; unit: string };
 	series: {
 		label: string;
+		/** as links write the key of the row; absent for a single series */
+		key?: string;
 		points: {
 			row: string;
 			x: number;

@@ -13,6 +13,7 @@ import {
 } from '$lib/quantities';
 import {
 	dual,
+	fitBothAxes,
 	fitLine,
 	fitLinear,
 	fitNonlinear,
@@ -77,8 +78,9 @@ export function fitPoints(definition: FitDefinition, points: Points, id: string)
 		return { ...lineResults(line), parameters: told(lineParameters(line, definition)) };
 	}
 	if (definition.model === 'both-axes') {
-		const line = fitLine(points.x, points.y, { ...options, weights: 'stated' });
-		return { ...lineResults(line), line: null, parameters: told([line.slope, line.intercept]) };
+		const line = fitBothAxes(points.x, points.y, {}, options);
+		const parameters = told([line.slope, line.intercept]);
+		return { ...lineResults(line), line: null, iterations: line.iterations, parameters };
 	}
 	const fit = modelFit(definition, points, options);
 	return { ...fit, parameters: told(fit.parameters), line: null };

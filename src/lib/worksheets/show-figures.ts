@@ -2,6 +2,7 @@ import {
 	coverageFactor,
 	differenceIn,
 	parseUnit,
+	QuantityProblem,
 	standardUncertainty,
 	unitText,
 	valueIn,
@@ -9,6 +10,8 @@ import {
 	type Unit
 } from '$lib/quantities';
 import type { Fitted } from './fit-step';
+import { holds } from './formula';
+import { NotThere } from './lookup';
 import { findColumn, keyOf, rowSlugs } from './named';
 import { inUse, type RowState } from './rows';
 import type { Session } from './session';
@@ -68,15 +71,16 @@ function fitSeries(
 	if (definition.per === null) {
 		const fitted = session.fits.get(definition.name) ?? null;
 		const rows = session.rows.tables.get(table) ?? [];
-		return [seriesOf(definition.label, rows, fitted, x, y)];
+		return [seriesOf(definition.label, null, shownRows(session, definition, rows, fitted), fitted, x, y)];
 	}
 	const byRow = new Map([...fitsByName(session)].flatMap(({ row, fitted }) => (row && fitted.definition === definition ? [[row, fitted] as const] : []))); // prettier-ignore
-	return [...rowSlugs(session, definition.per).keys()].map((head) => {
+	return [...rowSlugs(session, definition.per)].map(([head, slug]) => {
 		const fitted = byRow.get(head) ?? null;
 		const key = keyOf(session.worksheet, head);
 		const known = fitted && kept.get(fitted);
-		if (known && known.label === key) return known;
-		const series = seriesOf(key, session.rows.familyOf(table, head), fitted, x, y);
+		if (known && known.label === key && known.key === slug) return known;
+		const rows = shownRows(session, definition, session.rows.familyOf(table, head), fitted);
+		const series = seriesOf(key, slug, rows, fitted, x, y);
 		if (fitted) kept.set(fitted, series);
 		return series;
 	});
@@ -89,14 +93,35 @@ function tableSeries(
 	x: ColumnDefinition,
 	y: ColumnDefinition
 ): Series[] {
-	if (by === null) return [seriesOf(y.label, session.rows.tables.get(table) ?? [], null, x, y)];
-	return [...rowSlugs(session, by).keys()].map((head) =>
-		seriesOf(keyOf(session.worksheet, head), session.rows.familyOf(table, head), null, x, y)
+	if (by === null) return [seriesOf(y.label, null, session.rows.tables.get(table) ?? [], null, x, y)];
+	return [...rowSlugs(session, by)].map(([head, slug]) =>
+		seriesOf(keyOf(session.worksheet, head), slug, session.rows.familyOf(table, head), null, x, y)
 	);
+}
+
+/** Points of the fit, and those left out because their row is; rows that the fit is not for are not shown. */
+function shownRows(
+	session: Session,
+	{ where }: FitDefinition,
+	rows: readonly RowState[],
+	fitted: Fitted | null
+): readonly RowState[] {
+	if (!where) return rows;
+	const used = new Set(fitted?.rows);
+	return rows.filter((row) => {
+		if (used.has(row)) return true;
+		try {
+			return !inUse(row) && holds(where, session.surroundings(row));
+		} catch (cause) {
+			if (cause instanceof NotThere || cause instanceof QuantityProblem) return false;
+			throw cause;
+		}
+	});
 }
 
 function seriesOf(
 	label: string,
+	key: string | null,
 	rows: readonly RowState[],
 	fitted: Fitted | null,
 	x: ColumnDefinition,
@@ -123,7 +148,7 @@ function seriesOf(
 		];
 	});
 	const curve = fitted && curveOf(fitted, unitX, unitY);
-	return { label, points, ...(curve ? { curve } : {}) };
+	return { label, ...(key === null ? {} : { key }), points, ...(curve ? { curve } : {}) };
 }
 
 /** The fit and its band over the points it runs through. */

@@ -53,6 +53,7 @@ function showColumn({
 		symbol,
 		unit: unit ? unitText(unit) : '',
 		unitHtml: unit ? unitHtml(unit) : '',
+		kind,
 		computed: formula !== null,
 		resolution
 	};

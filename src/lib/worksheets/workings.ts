@@ -99,7 +99,8 @@ function workOut(
 		overUnit: () => null,
 		times: '\\,'
 	});
-	const substituted = typeset(taken(formula, surroundings), {
+	const settled = taken(formula, surroundings);
+	const substituted = typeset(settled, {
 		leaf: (leaf) => leafNumber(calculation, leaf, lookUp(leaf), row),
 		celsius: (part) =>
 			(isLeaf(part) && typedText(calculation, part, row)) ||
@@ -118,7 +119,7 @@ function workOut(
 		symbolic: sameTex(subject.symbol, symbolic) ? symbolic : `${subject.symbol} = ${symbolic}`,
 		substituted: `${subject.symbol} = ${substituted}`,
 		result: `${subject.symbol} = ${resultTex(value, subject.unit)}`,
-		partials: partials(calculation, subject, formula, surroundings),
+		partials: partials(calculation, subject, settled, surroundings),
 		budget: showBudget(toldIn(value, parseUnit(subject.unit)))
 	};
 }
@@ -133,7 +134,6 @@ function partials(
 	const leaves = leavesOf(formula);
 	return leaves.flatMap((leaf) => {
 		const input = known(surroundings, leaf);
-		// the branch of a condition that is not taken may lack its values
 		if (!input) return [];
 		if (isExact(input)) return [];
 		const probe: Source = { component: { id: 'probe', label: '', scope: 'run', degreesOfFreedom: Infinity } };

@@ -192,7 +192,7 @@ describe('coverage of the 95 % interval', () => {
 
 	it.each(['gauge', 'open'] as const)(
 		'holds for every kind of line: %s',
-		{ timeout: 600_000 },
+		{ timeout: 3_600_000 },
 		(instrument) => {
 			const [noisy, clean] = [new Work(worksheet), new Work(worksheet)];
 			const found = (work: Work, session: Session) => {

@@ -28,6 +28,7 @@ export interface SheetData {
 	rubric: { title: string; criteria: SheetCriterion[] };
 	marking: MarkingState | null;
 	takenBy: string | null;
+	returned: boolean;
 	place: number;
 	of: number;
 	finished: number;

@@ -4,6 +4,7 @@ import { allowed, type Viewer } from '../auth';
 import { database, schema, type Database, type Transaction } from '../db';
 import { notFound } from '../errors';
 import { firstName, labelOf, receivedInWords } from './label';
+import { namesHidden } from './names';
 import { levelsOfMany, rubricOfMarking, totalOf, type LevelRow } from './state';
 
 const { assignments, sittings } = schema;
@@ -12,7 +13,6 @@ interface Row extends Record<string, unknown> {
 	position: number;
 	alias: string;
 	author: string;
-	hide_names: boolean;
 	received_at: Date | string;
 	due_at: Date | string;
 	marking_id: string | null;
@@ -27,9 +27,9 @@ async function presentReport(
 	db: Database | Transaction,
 	viewer: Viewer,
 	row: Row,
-	levels: LevelRow[]
+	levels: LevelRow[],
+	hidden: boolean
 ): Promise<SittingReportShape> {
-	const hidden = row.hide_names && !row.returned;
 	const taken = row.marking_id !== null && row.grader_id !== viewer.id;
 	const state = row.returned
 		? 'returned'
@@ -89,11 +89,10 @@ export async function sittingState(
 	if (!sitting) throw notFound();
 	// Whoever stopped grading a lab section no longer sees its reports, though the order holds them.
 	const rows = await db.execute<Row>(
-		sql`select sr.position, rep.alias, u.name as author, ass.hide_names, snap.received_at, snap.due_at,
+		sql`select sr.position, rep.alias, u.name as author, snap.received_at, snap.due_at,
 				mk.id as marking_id, mk.rubric_version_id, mk.grader_id, gr.name as grader, mk.finished_at,
 				(select rel.action from releases rel where rel.report_id = rep.id order by rel.n desc limit 1) = 'return' as returned
 			from sitting_reports sr join reports rep on rep.id = sr.report_id join users u on u.id = rep.author_id
-			join work wk on wk.id = rep.work_id join assignments ass on ass.id = wk.assignment_id
 			join snapshots snap on snap.id = rep.counted_snapshot_id
 			left join markings mk on mk.snapshot_id = snap.id and mk.kind = 'first'
 			left join users gr on gr.id = mk.grader_id
@@ -104,13 +103,14 @@ export async function sittingState(
 		row.marking_id !== null && row.grader_id === viewer.id ? [row.marking_id] : []
 	);
 	const levels = await levelsOfMany(db, own);
+	const hidden = await namesHidden(db, viewer, sitting.assignment);
 	const reports: SittingReportShape[] = [];
 	for (const row of rows)
-		reports.push(await presentReport(db, viewer, row, levels.get(row.marking_id ?? '') ?? []));
+		reports.push(await presentReport(db, viewer, row, levels.get(row.marking_id ?? '') ?? [], hidden));
 	return {
 		id: sitting.id,
 		assignment: { id: sitting.assignment.id, title: sitting.assignment.title },
-		namesHidden: sitting.assignment.hideNames,
+		namesHidden: hidden,
 		reports,
 		finished: reports.filter((report) => report.state === 'finished' || report.state === 'returned').length,
 		next: nextReport(reports)

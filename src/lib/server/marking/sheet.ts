@@ -7,6 +7,7 @@ import { notFound } from '../errors';
 import type { StoredRubric } from '../experiments';
 import * as reports from '../reports';
 import { firstName, labelOf } from './label';
+import { namesHidden } from './names';
 import { nextReport, sittingFor } from './read-sitting';
 import { editionOf, rubricOfMarking, stateOf } from './state';
 
@@ -26,8 +27,10 @@ export interface MarkingSheet {
 	otherEngine: string | null;
 	rubric: StoredRubric;
 	marking: MarkingState | null;
-	/** first name of the grader who has it */
+	/** first name of the grader who has it, when that is another */
 	takenBy: string | null;
+	/** with its author again */
+	returned: boolean;
 	place: number;
 	of: number;
 	finished: number;
@@ -98,7 +101,7 @@ export async function openSheet(
 		.where(and(eq(markings.snapshotId, report.snapshotId), eq(markings.kind, 'first')));
 	const own = first?.graderId === viewer.id ? first : null;
 	const sitting = await sittingFor(viewer, report.assignment.id);
-	const hidden = report.assignment.hideNames && !report.returned;
+	const hidden = await namesHidden(db, viewer, report.assignment);
 	const evaluation = evaluate(snapshot.worksheet, snapshot.readings);
 	return {
 		alias: input.alias,
@@ -119,6 +122,7 @@ export async function openSheet(
 		rubric: await rubricOfMarking(db, own?.rubric ?? report.assignment.rubricVersionId),
 		marking: own ? await stateOf(db, own.id) : null,
 		takenBy: first && !own ? firstName(first.grader) : null,
+		returned: report.returned ?? false,
 		...placeIn(sitting, input.alias)
 	};
 }

@@ -1,5 +1,5 @@
-/** `clock`: 14:32; `day`: Friday 17:00; `date`: Friday 4 December; `full`: Friday 4 December 2026, 17:00. */
-export type TimeForm = 'clock' | 'day' | 'date' | 'full';
+/** `clock`: 14:32; `day`: Friday 17:00; `date`: Friday 4 December; `date-clock`: Fri 4 Dec, 17:00; `full`: Friday 4 December 2026, 17:00. */
+export type TimeForm = 'clock' | 'day' | 'date' | 'date-clock' | 'full';
 
 const dayInMs = 86_400_000;
 
@@ -32,6 +32,8 @@ export function courseTime(at: Date, zone: string, form?: TimeForm, now?: Date):
 			return `${p['weekday']} ${clock}`;
 		case 'date':
 			return date;
+		case 'date-clock':
+			return `${p['weekday']?.slice(0, 3)} ${p['day']} ${p['month']?.slice(0, 3)}, ${clock}`;
 		case 'full':
 			return `${date} ${p['year']}, ${clock}`;
 	}

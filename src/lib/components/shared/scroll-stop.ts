@@ -16,11 +16,26 @@ export function scrollStop(label: string): Attachment<HTMLElement> {
 				for (const name of ['tabindex', 'role', 'aria-label']) box.removeAttribute(name);
 			}
 		};
-		return watchSize(box, look);
+		const stops = [watchSize(box, look), goesOn(box)];
+		return () => {
+			for (const stop of stops) stop?.();
+		};
 	};
 }
 
-/** The same for a landmark that moves up and down: it keeps its role and name. */
+/** Marks a box while something lies out of sight at its right, for app.css to draw: its edge alone looks like the end. */
+export const goesOn: Attachment<HTMLElement> = (box) => {
+	const look = () =>
+		box.toggleAttribute('data-goes-on', box.scrollWidth - box.clientWidth - box.scrollLeft > 1);
+	box.addEventListener('scroll', look, { passive: true });
+	const stop = watchSize(box, look);
+	return () => {
+		box.removeEventListener('scroll', look);
+		stop();
+	};
+};
+
+/** As scrollStop, for a landmark that moves up and down: it keeps its role and name. */
 export const tallStop: Attachment<HTMLElement> = (box) =>
 	watchSize(box, () => {
 		if (box.scrollHeight > box.clientHeight + 1) box.tabIndex = 0;

@@ -128,6 +128,13 @@ export async function now(viewer: Viewer, at: Date): Promise<Now> {
 		};
 	}
 	const empty = student.length + grader.length + instructor.length === 0;
+	if (empty && viewer.siteAdministrator) {
+		return {
+			...shared,
+			sentence: 'You are in no course. The accounts and courses of this site are yours to look after.',
+			next: { label: 'Open the site', href: '/site/accounts' }
+		};
+	}
 	return {
 		...shared,
 		sentence: empty

@@ -6,6 +6,8 @@ import {
 	exampleText,
 	mistaken,
 	readingsOf,
+	recognisedInNumber,
+	recognisedInOwn,
 	statedValues,
 	worksheetOf,
 	type Session
@@ -401,6 +403,25 @@ describe('recognised mistakes', () => {
 		expect(stated('capacity-as-independent')).toBeLessThan(0.95 * stated(null));
 		expect(stated('capacity-left-out')).toBeLessThan(stated('capacity-as-independent'));
 		expect(stated('thermometer-not-cancelled')).toBeGreaterThan(1.1 * stated(null));
+	});
+
+	const inConstants = [
+		'wire-in-calories',
+		'acid-in-calories',
+		'certificate-in-air',
+		'certificate-in-air-alone',
+		'certificate-standard-state'
+	];
+	it.each(worksheet.mistakes.map(({ code }) => code))('%s is recognised when made', (code) => {
+		// a reading a minute is enough here
+		const readings = readingsOf(simulate(222, { step: 1 }));
+		// both of two slips with the masses leave them as weighed; the energy tells which it was
+		const name = code === 'certificate-in-air-alone' ? 'U_std.naphthalene' : undefined;
+		// +2 moles of gas come from liquid water counted or from the sign turned: the number alone can't tell
+		const expected = code === 'volume-work-sign' ? 'liquid-counted' : code;
+		expect(recognisedInNumber(worksheet, readings, code, name)).toBe(expected);
+		// a constant of the experiment is nothing the team writes
+		if (!inConstants.includes(code)) expect(recognisedInOwn(worksheet, readings, code)).toBe(code);
 	});
 
 	it('all change something, and no two the same', () => {

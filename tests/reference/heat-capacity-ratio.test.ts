@@ -6,6 +6,8 @@ import {
 	exampleText,
 	mistaken,
 	readingsOf,
+	recognisedInNumber,
+	recognisedInOwn,
 	statedValues,
 	worksheetOf,
 	type Session
@@ -248,6 +250,14 @@ describe('recognised mistakes', () => {
 		const ratio = (name: string) => (wrong.get(name) ?? NaN) / (right.get(name) ?? NaN) - 1;
 		expect(Math.abs(ratio('gamma.nitrogen'))).toBeLessThan(1e-3);
 		expect(ratio('trials trials-1 p_1')).toBeCloseTo((-47 * 9.80665 * 0.56) / 105_150, 5);
+	});
+
+	const codes = worksheet.mistakes.map(({ code }) => code);
+	it.each(codes)('%s is recognised when made', (code) => {
+		const readings = readingsOf(simulate(314));
+		expect(recognisedInNumber(worksheet, readings, code)).toBe(code);
+		// a constant of the experiment is nothing the team writes
+		if (code !== 'calories') expect(recognisedInOwn(worksheet, readings, code)).toBe(code);
 	});
 
 	it('all change something, and no two the same', () => {

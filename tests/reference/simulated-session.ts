@@ -1,6 +1,15 @@
 import { readFileSync } from 'node:fs';
 import { combinedUncertainty, coverageFactor, type Quantity } from '$lib/quantities';
-import type { Readings, Worksheet } from '$lib/worksheets';
+import {
+	checkStated,
+	compareOwn,
+	evaluate,
+	type Evaluation,
+	type Formula,
+	type Readings,
+	type StatedValue,
+	type Worksheet
+} from '$lib/worksheets';
 import { readTemplate } from '$lib/worksheets/authoring';
 import { namedValues } from '../../src/lib/worksheets/named';
 import { Session as WorkedSession } from '../../src/lib/worksheets/session';
@@ -50,6 +59,56 @@ export function statedValues(worksheet: Worksheet, session: Session): Map<string
 		}
 	}
 	return values;
+}
+
+/** The code of the mistake that the team's own workings are found to make, where it writes what `code` has instead. */
+export function recognisedInOwn(worksheet: Worksheet, readings: Readings, code: string): string | undefined {
+	const own: Record<string, Formula> = {};
+	for (const { name, formula } of [
+		...worksheet.tables.flatMap(({ columns }) => columns),
+		...worksheet.results
+	])
+		if (formula) own[name] = formula;
+	const { instead } = worksheet.mistakes.find((mistake) => mistake.code === code) ?? { instead: null };
+	return compareOwn(worksheet, readings, { ...own, ...instead?.formulas }).first?.mistake?.code;
+}
+
+/**
+ * The code of the mistake that is recognised in a single number that `code` leads to: in the first that it changes, or in
+ * the one asked for. Stated to nine digits, so that chance does not matter.
+ */
+export function recognisedInNumber(
+	worksheet: Worksheet,
+	readings: Readings,
+	code: string,
+	name?: string
+): string | undefined {
+	const right = evaluate(worksheet, readings);
+	const wrong = evaluate(mistaken(worksheet, code), readings);
+	const stated = name
+		? { name, text: (wrong.quantities[name]?.value ?? NaN).toPrecision(9) }
+		: firstChanged(worksheet, right, wrong);
+	return stated ? checkStated(worksheet, readings, stated).mistake?.code : undefined;
+}
+
+function firstChanged(worksheet: Worksheet, right: Evaluation, wrong: Evaluation): StatedValue | null {
+	const changed = (a: number | null | undefined, b: number | null | undefined): b is number =>
+		typeof a === 'number' && typeof b === 'number' && Math.abs(b - a) > 1e-6 * Math.abs(a);
+	for (const step of worksheet.order) {
+		if (step.kind === 'fit') continue;
+		if (step.kind === 'result') {
+			const value = wrong.quantities[step.name]?.value;
+			if (changed(right.quantities[step.name]?.value, value))
+				return { name: step.name, text: value.toPrecision(9) };
+			continue;
+		}
+		for (const [i, row] of (wrong.tables[step.table]?.rows ?? []).entries()) {
+			const value = row.cells[step.column]?.value;
+			if (changed(right.tables[step.table]?.rows[i]?.cells[step.column]?.value, value))
+				return { name: step.column, row: row.id, text: value.toPrecision(9) };
+		}
+	}
+	return null;
 }
 
 /** The text of a file beside the experiment. */

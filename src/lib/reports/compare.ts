@@ -105,10 +105,19 @@ function nearest(stated: StatedNumber, values: [string, ShownQuantity][]): Match
 			lastDigit: converted.lastDigit,
 			uncertainty: converted.uncertainty
 		};
-		const isBetter = !best || (agrees !== best.match.agrees ? agrees : distance < best.distance);
-		if (isBetter) best = { match, distance };
+		if (!best || comesBefore(match, distance, best)) best = { match, distance };
 	}
 	return best?.match ?? null;
+}
+
+/**
+ * A value that agrees comes before one that does not; then a result that the experiment is about, because by-ways to the
+ * same quantity (another fit, say) lie close to it; then the nearer one.
+ */
+function comesBefore(match: Match, distance: number, best: { match: Match; distance: number }): boolean {
+	if (match.agrees !== best.match.agrees) return match.agrees;
+	const [headline, other] = [match.quantity.headline === true, best.match.quantity.headline === true];
+	return headline === other ? distance < best.distance : headline;
 }
 
 function typedLine(stated: StatedNumber, match: Match, block: string): StatedLine {

@@ -56,6 +56,8 @@ export interface ShownQuantity {
 	expanded95: number | null;
 	display: DisplayForms;
 	budget: BudgetLine[];
+	/** one of the results that the experiment is about; absent for all others */
+	headline?: true;
 }
 export interface DisplayForms {
 	text: string; // '41.6(6) kJ/mol' with U+2212, U+2009

@@ -88,7 +88,13 @@ function scatterMean(items: readonly Quantity[], averaging: Averaging): Quantity
 		);
 	}
 	const spread = standardDeviation(items.map((item) => ({ ...item, parts: new Map() }))).value;
-	const parts = sharedParts(plain.parts, ownSources(items, averaging.anew));
+	const parts = sharedParts(
+		plain.parts,
+		ownSources(
+			items.map((item) => [item]),
+			averaging.anew
+		)
+	);
 	addPart(parts, scatterSource(averaging, items.length - 1), spread / Math.sqrt(items.length));
 	if (averaging.resolution) addPart(parts, averaging.resolution, averaging.resolutionSize);
 	return { ...plain, parts };
@@ -97,7 +103,10 @@ function scatterMean(items: readonly Quantity[], averaging: Averaging): Quantity
 /** Mean weighted by 1/u^2 of what is drawn anew in each row; under 'scatter' its size comes from the scatter found. */
 function weightedMean(items: readonly Quantity[], averaging: Averaging): Quantity {
 	const first = there(items[0]);
-	const own = ownSources(items, averaging.anew);
+	const own = ownSources(
+		items.map((item) => [item]),
+		averaging.anew
+	);
 	const weights = items.map((item) => {
 		let size = 0;
 		for (const [source, part] of item.parts) if (own(source)) size += part * part;
@@ -127,22 +136,29 @@ function sharedParts(parts: LinearParts, own: (source: Source) => boolean): Map<
 }
 
 /**
- * Tells the sources that each item has for itself. A reading's own always are; what a run has of its own only while it
- * stands in one item: the scatter behind a calibration is a run's too, and shared by all that rest on it.
+ * Tells the sources that each item has for itself; an item may be several quantities, the axes of a point. A reading's own
+ * always are; what a run has of its own only while it stands in one item: the scatter behind a calibration is a run's too,
+ * and shared by all that rest on it.
  */
 export function ownSources(
-	items: readonly Quantity[],
+	items: readonly (readonly Quantity[])[],
 	anew: ReadonlySet<Scope>
 ): (source: Source) => boolean {
 	if (!anew.has('run')) return (source) => anew.has(source.component.scope);
-	const counts = new Map<Source, number>();
-	for (const { parts } of items) {
-		for (const source of parts.keys())
-			if (source.component.scope === 'run') counts.set(source, (counts.get(source) ?? 0) + 1);
-	}
+	const seenIn = new Map<Source, number>();
+	const shared = new Set<Source>();
+	items.forEach((item, i) => {
+		for (const { parts } of item) {
+			for (const source of parts.keys()) {
+				if (source.component.scope !== 'run') continue;
+				if ((seenIn.get(source) ?? i) === i) seenIn.set(source, i);
+				else shared.add(source);
+			}
+		}
+	});
 	return (source) => {
 		const { scope } = source.component;
-		return scope === 'run' ? counts.get(source) === 1 : anew.has(scope);
+		return scope === 'run' ? seenIn.has(source) && !shared.has(source) : anew.has(scope);
 	};
 }
 

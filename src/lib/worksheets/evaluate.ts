@@ -74,6 +74,11 @@ export class Evaluator {
 		};
 	}
 
+	/** The sample calculations alone, with rows chosen by table name, of the readings evaluated last. */
+	workings(chosenRows: Readonly<Record<string, string>>): Evaluation['workings'] {
+		return showWorkings(this.session, chosenRows);
+	}
+
 	private showQuantities(): Record<string, ShownQuantity> {
 		const { session } = this;
 		const shown: Record<string, ShownQuantity> = {};
@@ -84,7 +89,11 @@ export class Evaluator {
 			if (known?.name !== name) {
 				const typed =
 					group === null ? (constants.get(name) ?? session.parameters.get(name)?.typed) : undefined;
-				known = { ...showQuantity(quantity, namingFor(value), typed), ...(group === null ? {} : { group }) };
+				known = {
+					...showQuantity(quantity, namingFor(value), typed),
+					...(group === null ? {} : { group }),
+					...('headline' in value.naming && value.naming.headline === true ? { headline: true } : {})
+				};
 				this.quantities.set(quantity, known);
 			}
 			shown[name] = known;

@@ -31,9 +31,11 @@ export function computeFit(
 		const { points, used } = gather(definition, head, rows, lookup, manner);
 		if (!rows.isParent(definition.table))
 			return { definition, head, rows: used, fit: fitPoints(definition, points, id) };
-		const own = new OwnOfRuns(ownSources(points.y, lookup.anewIn(definition.table)));
-		const enter = (values: readonly Quantity[]) => values.map((value) => own.enter(value));
 		const { x, y, terms, inputs } = points;
+		const axes = [x, y, ...terms, ...inputs];
+		const items = y.map((_, i) => axes.flatMap((axis) => axis[i] ?? []));
+		const own = new OwnOfRuns(ownSources(items, lookup.anewIn(definition.table)));
+		const enter = (values: readonly Quantity[]) => values.map((value) => own.enter(value));
 		const entered = {
 			...points,
 			x: enter(x),

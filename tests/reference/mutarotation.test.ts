@@ -1,10 +1,11 @@
 import { describe, expect, it } from 'vitest';
 import { combinedUncertainty, type Quantity } from '$lib/quantities';
-import { evaluate, type Evaluation } from '$lib/worksheets';
+import { evaluate, readTable, type Evaluation } from '$lib/worksheets';
 import { Session as Work } from '../../src/lib/worksheets/session';
 import {
 	bounds,
 	draws,
+	exampleText,
 	holds,
 	mistaken,
 	readingsOf,
@@ -121,6 +122,44 @@ describe('a run with noise', () => {
 			}
 		]);
 		expect(value(without, 'k_0')).not.toBe(value(evaluation, 'k_0'));
+	});
+});
+
+describe('the readings beside the experiment', () => {
+	const tables = Object.fromEntries(
+		['runs', 'readings'].map((name) => {
+			const columns = worksheet.tables.find((table) => table.name === name)?.columns ?? [];
+			const read = readTable(exampleText(worksheet.slug, `${name}.csv`), columns);
+			expect(read.problems).toEqual([]);
+			return [name, read.rows.map(({ cells }) => cells)];
+		})
+	);
+	const parameters = JSON.parse(exampleText(worksheet.slug, 'parameters.json')) as Record<string, string>;
+	const evaluation = work({ parameters, tables });
+	const share = (name: string, source: RegExp) =>
+		(evaluation.quantities[name]?.budget ?? [])
+			.filter(({ label }) => source.test(label))
+			.reduce((sum, each) => sum + each.share, 0);
+
+	it('are those that the script makes, and have no problem', () => {
+		expect({ parameters, tables }).toMatchObject({
+			parameters: simulate(2104).parameters,
+			tables: simulate(2104).tables
+		});
+		expect(evaluation.problems).toEqual([]);
+	});
+
+	it('agree with the literature', () => {
+		for (const { verdict } of Object.values(evaluation.comparisons)) expect(verdict).toBe('compatible');
+	});
+
+	it('owe the uncertainty of a run to its final angle, that of the line to the temperatures of the runs', () => {
+		expect(share('k.a', /final angle/)).toBeGreaterThan(0.7);
+		expect(share('k.a', /Thermostat/)).toBe(0);
+		expect(share('k_0', /Thermostat/)).toBeGreaterThan(0.8);
+		expect(share('k_H', /Titrated acid/)).toBeGreaterThan(0.05);
+		// blank and concentration are the same in all runs and touch no rate constant
+		expect(share('k_0', /blank|Flask/)).toBe(0);
 	});
 });
 

@@ -156,12 +156,18 @@ describe('what the bench says', () => {
 	it.each([
 		['open-column-without-barometer', inFirst('open', {}, { p_b: '' })],
 		['no-mercury-temperature', inFirst('closed', {}, { t_Hg: '' })],
+		['gauge-off', inFirst('gauge', {}, { p_b: '757.0', p_open: '767.0' })],
+		['thermometer-off', inFirst('gauge', {}, { t_zero: '0.30' })],
 		['leak', inFirst('gauge', {}, { leak: '2' })],
 		['not-steady', inFirst('gauge', { drift: '0.3' })],
 		['no-pressure', inFirst('gauge', { p: '' })],
 		['no-barometer', inFirst('gauge', {}, { p_b: '' })]
 	])('%s', (code, session) => {
 		expect(codes(session)).toContain(code);
+	});
+
+	it('nothing where gauge and thermometer were found right', () => {
+		expect(codes(inFirst('gauge', {}, { p_b: '757.0', p_open: '756.8', t_zero: '0.05' }))).toEqual([]);
 	});
 
 	it('that the span is short, on mercury too', () => {

@@ -75,10 +75,10 @@ export function reduction({ grams, molarMass, carbon, hydrogen, oxygen, atmosphe
 }
 
 /**
- * One session: `runs` runs of each compound. `noise` scales every deviation (0: none): 1 mK for each temperature,
- * `scatter` of the rise from run to run, and those that are shared by the whole session, of which the thermometer's slope
- * is one. `digits: false` leaves readings unrounded. Periods in minutes, `step` between readings. Readings are texts,
- * as typed.
+ * One session: `runs` runs of each compound. `noise` scales every deviation (0: none): `flicker` in K for each
+ * temperature, `scatter` of the rise from run to run, and those that are shared by the whole session, of which the
+ * thermometer's slope is one. `digits: false` leaves readings unrounded. Periods in minutes, `step` between readings.
+ * Readings are texts, as typed.
  */
 export function simulate(
 	seed,
@@ -86,6 +86,7 @@ export function simulate(
 		runs = 3,
 		noise = 1,
 		scatter = 0.001,
+		flicker = 0.001,
 		digits = true,
 		fore = 6,
 		main = 12,
@@ -173,7 +174,7 @@ export function simulate(
 				tables.temperatures.push({
 					run,
 					t: written(reading * step, 2),
-					T: written(at(reading * step) * slope + deviation(0.001), 3)
+					T: written(at(reading * step) * slope + deviation(flicker), 3)
 				});
 		}
 	}

@@ -17,6 +17,7 @@ interface Options {
 	runs?: number;
 	noise?: number;
 	scatter?: number;
+	flicker?: number;
 	digits?: boolean;
 	fore?: number;
 	main?: number;
@@ -311,6 +312,36 @@ function withGain(session: Session, gain: number): Session {
 	}));
 	return { ...session, tables: { ...session.tables, temperatures } };
 }
+
+describe('three and three runs', () => {
+	// sessions with seeds 1 to 30, read once a minute, without flicker and rounding, which fewer readings would make larger
+	const energies = (scatter: number) =>
+		Array.from(
+			{ length: 30 },
+			(_, i) =>
+				work(simulate(i + 1, { scatter, step: 1, flicker: 0, digits: false })).quantities[
+					'U_bomb.naphthalene'
+				]
+		);
+	const rootMeanSquare = (sizes: number[]) =>
+		Math.sqrt(sizes.reduce((sum, size) => sum + size * size, 0) / sizes.length);
+
+	it('give 5 kJ/mol at 3 mK from run to run, 2.5 at 1.5 mK, and up to four degrees of freedom', () => {
+		// thirty estimates with four degrees of freedom each: known to 1/sqrt(2 * 120), 6.5 %, and two of that are allowed
+		for (const [millikelvins, expected] of [
+			[3, 5],
+			[1.5, 2.5]
+		] as const) {
+			const found = energies(millikelvins / 2500);
+			const typical = rootMeanSquare(found.map((energy) => energy?.standardUncertainty ?? NaN));
+			expect(Math.abs(typical / expected - 1)).toBeLessThan(0.13);
+			for (const energy of found) {
+				expect(energy?.degreesOfFreedom).toBeGreaterThan(2);
+				expect(energy?.degreesOfFreedom).toBeLessThan(5);
+			}
+		}
+	});
+});
 
 describe('the example', () => {
 	const read = (name: string) => {

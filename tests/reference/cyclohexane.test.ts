@@ -6,6 +6,8 @@ import {
 	exampleText,
 	mistaken,
 	readingsOf,
+	recognisedInNumber,
+	recognisedInOwn,
 	worksheetOf,
 	type Session
 } from './simulated-session';
@@ -137,5 +139,11 @@ describe('recognised mistakes', () => {
 		const shift = value(made('zero-left-on'), 'T_b') - boiling;
 		expect(shift).toBeLessThan(-0.05);
 		expect(shift).toBeGreaterThan(-0.2);
+	});
+
+	it.each(worksheet.mistakes.map(({ code }) => code))('%s is recognised when made', (code) => {
+		const readings = readingsOf(simulate(1946));
+		expect(recognisedInNumber(worksheet, readings, code)).toBe(code);
+		expect(recognisedInOwn(worksheet, readings, code)).toBe(code);
 	});
 });

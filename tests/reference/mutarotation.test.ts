@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { combinedUncertainty, type Quantity } from '$lib/quantities';
-import { evaluate, readTable, type Evaluation } from '$lib/worksheets';
+import { checkStated, evaluate, readTable, type Evaluation } from '$lib/worksheets';
 import { Session as Work } from '../../src/lib/worksheets/session';
 import {
 	bounds,
@@ -9,6 +9,8 @@ import {
 	holds,
 	mistaken,
 	readingsOf,
+	recognisedInNumber,
+	recognisedInOwn,
 	statedValues,
 	worksheetOf,
 	type Session
@@ -288,6 +290,23 @@ describe('recognised mistakes', () => {
 
 	it('the last reading taken as the final angle makes k far too large', () => {
 		expect(value(made('last-reading-as-final'), 'k.c') / value(right, 'k.c')).toBeGreaterThan(1.2);
+	});
+
+	it.each(worksheet.mistakes.map(({ code }) => code))('%s is recognised when made', (code) => {
+		const readings = readingsOf(simulate(2104));
+		expect(recognisedInNumber(worksheet, readings, code)).toBe(code);
+		// weights are no formula that the team writes
+		if (code !== 'unweighted') expect(recognisedInOwn(worksheet, readings, code)).toBe(code);
+	});
+
+	it('is recognised in a result alone, to three digits', () => {
+		const readings = readingsOf(simulate(2104));
+		const stated = (name: string, text: string) =>
+			checkStated(worksheet, readings, { name, text }).mistake?.code;
+		const { k_H, k_1_0 } = evaluate(worksheet, readings).quantities;
+		expect(stated('k_H', ((k_H?.value ?? NaN) / Math.LN10).toFixed(3))).toBe('decadic-logarithm');
+		expect(stated('k_H', ((k_H?.value ?? NaN) / 2).toFixed(3))).toBe('stock-concentration');
+		expect(stated('k_1_0', ((k_1_0?.value ?? NaN) * (1 + 1 / 1.745)).toFixed(4))).toBe('one-direction');
 	});
 
 	it('all change something with real readings, and no two the same', () => {

@@ -4,7 +4,17 @@ import type { Quantity } from '$lib/quantities';
 import { evaluate, type Evaluation } from '$lib/worksheets';
 import { namedValues } from '../../src/lib/worksheets/named';
 import { Session as Work } from '../../src/lib/worksheets/session';
-import { bounds, draws, holds, mistaken, readingsOf, worksheetOf, type Session } from './simulated-session';
+import {
+	bounds,
+	draws,
+	holds,
+	mistaken,
+	readingsOf,
+	recognisedInNumber,
+	recognisedInOwn,
+	worksheetOf,
+	type Session
+} from './simulated-session';
 
 type Instrument = 'gauge' | 'closed' | 'open';
 interface Options {
@@ -190,6 +200,19 @@ describe('recognised mistakes', () => {
 		expectDigits(wrong('calories', 'H_vap'), (enthalpy * 1.987) / 8.314462618, 12);
 		// d(1/t) is larger than d(1/T) by about (T/t) squared
 		expect(wrong('celsius', 'H_vap')).toBeLessThan(0.1 * enthalpy);
+	});
+});
+
+describe('each recognised mistake', () => {
+	const session = (code: string) => {
+		const made = simulate(310, { instrument: code === 'column-not-reduced' ? 'open' : 'gauge' });
+		if (code === 'stem-left-out') Object.assign(made.parameters, { t_exit: '30', t_stem: '40' });
+		return readingsOf(made);
+	};
+	it.each(worksheet.mistakes.map(({ code }) => code))('%s is recognised when made', (code) => {
+		expect(recognisedInNumber(worksheet, session(code), code)).toBe(code);
+		// a constant of the experiment is nothing the team writes
+		if (code !== 'calories') expect(recognisedInOwn(worksheet, session(code), code)).toBe(code);
 	});
 });
 

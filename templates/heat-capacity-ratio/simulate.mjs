@@ -47,7 +47,7 @@ export function simulate(seed, { gamma = leaking, trials = 6, noise = 1, digits 
 
 	const parameters = {
 		p_b: written((room + deviation(100)) / 1000, 2),
-		dp_b: written(0, 2),
+		barometer: 'electronic',
 		t_room: written(celsius + deviation(0.3), 1),
 		rho_20: written(density20 + deviation(2), 1),
 		z: written(zero + deviation(0.3), 0),

@@ -83,6 +83,25 @@ describe('a session without noise', () => {
 	});
 });
 
+describe('the barometer', () => {
+	const room = (parameters: Record<string, string>) => {
+		const session = exactSession();
+		Object.assign(session.parameters, parameters);
+		return value(work(session), 'p_2');
+	};
+
+	it('is taken as it is where it is electronic, with its certificate’s correction', () => {
+		expect(room({ p_b: '99.40' })).toBeCloseTo(99.4, 12);
+		expect(room({ p_b: '99.40', dp_b: '-0.12' })).toBeCloseTo(99.28, 12);
+	});
+
+	it('is reduced by 2.47 mm at 760 mm and 20 °C where it is a mercury column on brass', () => {
+		// from memory of barometer tables; 760 mm is 101.325 kPa
+		const reduced = room({ p_b: '101.325', barometer: 'mercury', t_room: '20.0' });
+		expect(((101.325 - reduced) / 101.325) * 760).toBeCloseTo(2.47, 2);
+	});
+});
+
 describe('what the literature says', () => {
 	const at = (celsius: string) => {
 		const session = exactSession();
@@ -286,6 +305,7 @@ describe('what the bench says while the apparatus is there', () => {
 
 	it.each([
 		['no-barometer', ({ parameters }: Session) => delete parameters['p_b']],
+		['no-barometer-kind', ({ parameters }: Session) => delete parameters['barometer']],
 		['no-zero', ({ parameters }: Session) => delete parameters['z']],
 		['no-density', ({ parameters }: Session) => delete parameters['rho_20']],
 		['no-temperature', ({ parameters }: Session) => delete parameters['t_room']],

@@ -167,10 +167,11 @@ export function holds(quantity: Quantity, expected: number): boolean {
 
 /**
  * Bounds for a share that should lie from `low` to `high`: as they are for 10 000 draws, further apart by what fewer
- * draws scatter more (two standard deviations of a share of 95 %, less those of 10 000 draws).
+ * draws scatter more (three standard deviations of a share of 95 %, less those of 10 000 draws), since how many there are
+ * depends on the computer.
  */
 export function bounds(low: number, high: number, drawn: number): [number, number] {
-	const scatter = (n: number) => 2 * Math.sqrt((0.95 * 0.05) / n);
+	const scatter = (n: number) => 3 * Math.sqrt((0.95 * 0.05) / n);
 	const wider = Math.max(0, scatter(drawn) - scatter(10_000));
 	return [low - wider, high + wider];
 }

@@ -1,10 +1,12 @@
 import {
 	combineVariances,
+	variance,
 	type Component,
 	type Quantity,
 	type Source,
 	type Uncertainty
 } from '$lib/quantities';
+import { outOfRange } from './problems';
 import { chiSquaredOf, readingVariance } from './stated';
 
 /**
@@ -106,14 +108,19 @@ export function modelFit(solved: Solved, { id, scatterLabel, policy }: FitOption
 			solved.inputs(i).map(({ input, slope }) => [input, slope] as const)
 		)
 	);
+	const parameters = solved.parameters.map((told, j) => ({
+		...told,
+		parts: partsOf(sources, spread[j] ?? [])
+	}));
+	// squares of what stands apart by more than 1e150 are no numbers any more
+	if (!parameters.every((each) => Number.isFinite(each.value) && Number.isFinite(variance(each)))) {
+		throw outOfRange();
+	}
 	return {
 		points: y.length,
 		degreesOfFreedom,
 		policy,
-		parameters: solved.parameters.map((told, j) => ({
-			...told,
-			parts: partsOf(sources, spread[j] ?? [])
-		})),
+		parameters,
 		covariance: covarianceOf(own, spread),
 		fitted: solved.fitted,
 		residuals,

@@ -6,6 +6,7 @@ import { FitProblem } from './problems';
  * each (effective variance). An input that shares a source with y takes part with its sign.
  */
 export function readingVariance(y: Quantity, inputs: readonly (readonly [Quantity, number])[]): number {
+	if (!inputs.some(([input]) => hasOwn(input))) return ownVariance(y);
 	const parts = new Map<Source, number>();
 	for (const [source, part] of y.parts)
 		if (source.component.scope === 'reading') addPart(parts, source, part);
@@ -16,6 +17,18 @@ export function readingVariance(y: Quantity, inputs: readonly (readonly [Quantit
 	}
 	let size = 0;
 	for (const part of parts.values()) size += part * part;
+	return size;
+}
+
+function hasOwn({ parts }: Quantity): boolean {
+	for (const { component } of parts.keys()) if (component.scope === 'reading') return true;
+	return false;
+}
+
+/** Without an uncertain input no two parts can be of the same source. */
+function ownVariance({ parts }: Quantity): number {
+	let size = 0;
+	for (const [{ component }, part] of parts) if (component.scope === 'reading') size += part * part;
 	return size;
 }
 

@@ -29,7 +29,7 @@ export function curveMarks(
 
 /** Whether the points of a series stand closer than they are wide. */
 export function standClose({ points }: PlotSeries, x: Axis, y: Axis): boolean {
-	if (points.length < 20) return false;
+	if (points.length < 40) return false;
 	const places = points.map((point) => ({ x: onAxis(x, point.x), y: onAxis(y, point.y) }));
 	const close = places.filter((place, i) => {
 		const next = places[i + 1];

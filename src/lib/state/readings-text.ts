@@ -76,15 +76,16 @@ export function statusOf(
 
 /** A worksheet's unit as it is shown: "°C" for "degC". */
 export function shownUnit(unit: string): string {
-	return unitText(parseUnit(unit));
+	return unit === '' ? '' : unitText(parseUnit(unit));
 }
 
 /** "0.1 K each reading, 0.2 K shared": the components of a standard uncertainty in few words. */
 export function componentsInWords(components: readonly UncertaintyComponent[]): string {
 	return components
 		.map(({ size, unit, scope, distribution, acts }) => {
-			const amount = acts === 'gain' ? `${size * 100} %` : `${size} ${shownUnit(unit)}`;
-			const reach = scope === 'reading' ? 'each reading' : 'shared';
+			const amount =
+				acts === 'gain' ? `${Number((size * 100).toPrecision(6))} %` : `${size} ${shownUnit(unit)}`;
+			const reach = scope === 'reading' ? 'each reading' : scope === 'run' ? 'each run' : 'shared';
 			return `${distribution === 'normal' ? '' : '±'}${amount} ${reach}`;
 		})
 		.join(', ');

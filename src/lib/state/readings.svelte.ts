@@ -15,6 +15,7 @@ import {
 import type { ReadingRow, Readings, Worksheet } from '$lib/worksheets';
 import { openLiveDocument, type LiveDocument } from './live-document.svelte';
 import { counted, differences, liveRowLimit, pastedCells, statusOf, type Difference } from './readings-text';
+import { sameRows } from './same-rows';
 import { Workings } from './workings.svelte';
 
 export interface Person {
@@ -234,6 +235,16 @@ export class ReadingsSheet {
 		);
 	}
 
+	/** What tells the rows of a table apart, in their order: what rows of other tables may belong to. */
+	keysOf(table: string): string[] {
+		const definition = this.worksheet.tables.find(({ name }) => name === table);
+		const key = definition?.key;
+		if (!definition || key == null) return [];
+		const rows = definition.fixed ?? this.rows(table).map(({ cells }) => cells);
+		const texts = rows.map((cells) => (cells[key] ?? '').trim());
+		return texts.filter((text, index) => text !== '' && texts.indexOf(text) === index);
+	}
+
 	setParameter(name: string, text: string): void {
 		if (!this.canWrite || !this.#doc) return;
 		this.#changed(name);
@@ -357,17 +368,4 @@ function tooMany(rows: number): Outcome {
 		done: false,
 		text: `A table takes ${liveRowLimit.toLocaleString('en')} rows, and this would make ${rows.toLocaleString('en')}. Nothing was taken. Upload the file: it is kept whole, and a thinned-out part can go into the table.`
 	};
-}
-
-/** Rows that did not change stay the same objects, so that only changed rows are drawn anew. */
-function sameRows(before: Readings, after: Readings): Readings {
-	const tables: Readings['tables'] = {};
-	for (const [name, rows] of Object.entries(after.tables)) {
-		const known = new Map((before.tables[name] ?? []).map((row) => [row.id, row]));
-		tables[name] = rows.map((row) => {
-			const old = known.get(row.id);
-			return old && JSON.stringify(old) === JSON.stringify(row) ? old : row;
-		});
-	}
-	return { parameters: after.parameters, tables };
 }

@@ -4,6 +4,7 @@ import type { reports } from '$lib/contracts';
 import { presenceIn, type Present } from './editor-presence';
 import { openLiveDocument, type LiveDocument, type LiveState } from './live-document.svelte';
 import type { ReportSheet } from './report.svelte';
+import { sameRows } from './same-rows';
 
 interface Person {
 	id: string;
@@ -172,7 +173,8 @@ export class LiveReport {
 			const take = () => {
 				scheduled = 0;
 				const readings = readReadings(doc, tables);
-				if (JSON.stringify(readings) !== JSON.stringify(sheet.readings)) sheet.readings = readings;
+				if (JSON.stringify(readings) !== JSON.stringify(sheet.readings))
+					sheet.readings = sameRows(sheet.readings, readings);
 			};
 			// A pasted table is many edits at once: the workings are done once for all of them.
 			const soon = () => {

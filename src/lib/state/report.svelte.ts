@@ -10,7 +10,7 @@ import {
 	type ShownResult
 } from '$lib/reports';
 import type { reports } from '$lib/contracts';
-import { evaluate, type Evaluation, type Readings, type Worksheet } from '$lib/worksheets';
+import { Evaluator, type Evaluation, type Readings, type Worksheet } from '$lib/worksheets';
 
 /** A section as the sheet draws it. */
 export interface DrawnSection {
@@ -33,8 +33,11 @@ export class ReportSheet {
 	readonly #outline: reports.SectionDocument[];
 	#texts: Record<string, string> = $state({});
 	readings: Readings = $state.raw({ parameters: {}, tables: {} });
+	/** made with the first evaluation, and kept for the next ones */
+	#evaluator: Evaluator | null = null;
+	#last: { readings: Readings; evaluation: Evaluation } | null = null;
 
-	readonly evaluation: Evaluation = $derived.by(() => worked(this.worksheet, this.readings));
+	readonly evaluation: Evaluation = $derived.by(() => this.#worked(this.readings));
 	readonly #sources: string[] = $derived.by(() => this.#outline.map(({ key }) => this.#texts[key] ?? ''));
 	readonly numbering: Numbering = $derived(numberPlacements(this.#sources));
 	readonly #checks: Check[][] = $derived.by(() =>
@@ -60,6 +63,15 @@ export class ReportSheet {
 		this.#texts = Object.fromEntries(outline.map(({ key, text }) => [key, text]));
 	}
 
+	/** On the server nothing derived is kept, and the same evaluation is asked for several times. */
+	#worked(readings: Readings): Evaluation {
+		if (this.#last?.readings !== readings) {
+			this.#evaluator ??= new Evaluator(this.worksheet);
+			this.#last = { readings, evaluation: this.#evaluator.evaluate(readings) };
+		}
+		return this.#last.evaluation;
+	}
+
 	textOf(key: string): string {
 		return this.#texts[key] ?? '';
 	}
@@ -77,14 +89,4 @@ export class ReportSheet {
 	get unmet(): number {
 		return this.sections.reduce((sum, { checks }) => sum + checks.filter(({ met }) => !met).length, 0);
 	}
-}
-
-/** Readings come as one value at every change; the last one worked up is asked for several times. */
-let last: { worksheet: Worksheet; readings: Readings; evaluation: Evaluation } | undefined;
-
-function worked(worksheet: Worksheet, readings: Readings): Evaluation {
-	if (last?.worksheet !== worksheet || last.readings !== readings) {
-		last = { worksheet, readings, evaluation: evaluate(worksheet, readings) };
-	}
-	return last.evaluation;
 }

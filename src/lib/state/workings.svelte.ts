@@ -1,4 +1,4 @@
-import { evaluate, type Evaluation, type Readings, type Worksheet } from '$lib/worksheets';
+import { Evaluator, type Evaluation, type Readings, type Worksheet } from '$lib/worksheets';
 
 /** Up to this long an evaluation runs between two key strokes without being felt, ms. */
 const unfelt = 12;
@@ -11,12 +11,20 @@ const longestPause = 1_500;
 export class Workings {
 	readonly worksheet: Worksheet;
 	evaluation: Evaluation = $state.raw() as Evaluation;
+	/** Kept from edit to edit, so that each computes only what it touches. */
+	readonly #evaluator: Evaluator;
 	#took = 0;
 	#timer: ReturnType<typeof setTimeout> | null = null;
 
 	constructor(worksheet: Worksheet, readings: Readings) {
 		this.worksheet = worksheet;
+		this.#evaluator = new Evaluator(worksheet);
 		this.evaluation = this.#evaluate(readings);
+	}
+
+	/** Sample calculations with rows chosen by table name, of the evaluation there is. */
+	ofRows(chosen: Readonly<Record<string, string>>): Evaluation['workings'] {
+		return this.#evaluator.workings(chosen);
 	}
 
 	follow(readings: Readings): void {
@@ -41,7 +49,7 @@ export class Workings {
 
 	#evaluate(readings: Readings): Evaluation {
 		const from = performance.now();
-		const evaluation = evaluate(this.worksheet, readings);
+		const evaluation = this.#evaluator.evaluate(readings);
 		this.#took = performance.now() - from;
 		return evaluation;
 	}

@@ -15,7 +15,7 @@ const worksheet = JSON.parse(
 	JSON.stringify(
 		readTemplate(
 			{
-				'template.yaml': readFileSync(new URL('core/mutarotation.yaml', import.meta.url), 'utf8'),
+				'template.yaml': readFileSync('tests/bench/core/mutarotation.yaml', 'utf8'),
 				'guide.md': 'None.'
 			},
 			'tests/bench/core'
@@ -86,7 +86,6 @@ function assertEqual(readings: Readings): number {
 		if (!quantity) throw new Error(`The core has no ${name}: ${session.problems[0]?.message ?? ''}`);
 		const told = valueIn(quantity);
 		const size = standardUncertainty(quantity) / quantity.unit.factor;
-		if (process.env.DETAIL) console.log(name, told, value, size, u);
 		worst = Math.max(worst, Math.abs(told / value - 1), Math.abs(size / u - 1));
 	}
 	if (!(worst < 1e-9)) throw new Error(`The core and bare numbers differ by ${worst}.`);

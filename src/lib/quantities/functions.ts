@@ -1,61 +1,61 @@
 import { dimensionless } from './dimension';
 import * as elementary from './elementary';
 import { QuantityProblem } from './problems';
-import { propagate, type Quantity } from './quantity';
+import { propagateOne, type Quantity } from './quantity';
 import { requireNumber } from './require';
 import { parseUnit, unitOne, type Unit } from './units';
 
 /** Natural logarithm; wants a number, as in ln(p/Pa). */
 export function ln(a: Quantity): Quantity {
 	requireLogarithmic(a);
-	return propagate(elementary.ln(a.value), dimensionless, [[a, 1 / a.value]], unitOne);
+	return propagateOne(elementary.ln(a.value), dimensionless, a, 1 / a.value, unitOne);
 }
 
 /** Decadic logarithm; wants a number, as in log10(c/(mol/L)). */
 export function log10(a: Quantity): Quantity {
 	requireLogarithmic(a);
 	const slope = 1 / (a.value * elementary.ln(10));
-	return propagate(elementary.log10(a.value), dimensionless, [[a, slope]], unitOne);
+	return propagateOne(elementary.log10(a.value), dimensionless, a, slope, unitOne);
 }
 
 export function exp(a: Quantity): Quantity {
 	requireNumber(a, 'An exponential');
 	const value = elementary.exp(a.value);
-	return propagate(value, dimensionless, [[a, value]], unitOne);
+	return propagateOne(value, dimensionless, a, value, unitOne);
 }
 
 export function sine(a: Quantity): Quantity {
 	requireNumber(a, 'A sine', angle);
-	return propagate(elementary.sin(a.value), dimensionless, [[a, elementary.cos(a.value)]], unitOne);
+	return propagateOne(elementary.sin(a.value), dimensionless, a, elementary.cos(a.value), unitOne);
 }
 
 export function cosine(a: Quantity): Quantity {
 	requireNumber(a, 'A cosine', angle);
-	return propagate(elementary.cos(a.value), dimensionless, [[a, -elementary.sin(a.value)]], unitOne);
+	return propagateOne(elementary.cos(a.value), dimensionless, a, -elementary.sin(a.value), unitOne);
 }
 
 export function tangent(a: Quantity): Quantity {
 	requireNumber(a, 'A tangent', angle);
 	const value = elementary.tan(a.value);
-	return propagate(value, dimensionless, [[a, 1 + value * value]], unitOne);
+	return propagateOne(value, dimensionless, a, 1 + value * value, unitOne);
 }
 
 /** Angle from -90 deg to 90 deg, told in radians. */
 export function arcsine(a: Quantity): Quantity {
 	const slope = 1 / Math.sqrt(underTheRoot(a, 'An arcsine'));
-	return propagate(elementary.asin(a.value), dimensionless, [[a, slope]], radian());
+	return propagateOne(elementary.asin(a.value), dimensionless, a, slope, radian());
 }
 
 /** Angle from 0 to 180 deg, told in radians. */
 export function arccosine(a: Quantity): Quantity {
 	const slope = -1 / Math.sqrt(underTheRoot(a, 'An arccosine'));
-	return propagate(elementary.acos(a.value), dimensionless, [[a, slope]], radian());
+	return propagateOne(elementary.acos(a.value), dimensionless, a, slope, radian());
 }
 
 /** Angle from -90 deg to 90 deg, told in radians. */
 export function arctangent(a: Quantity): Quantity {
 	requireNumber(a, 'An arctangent');
-	return propagate(elementary.atan(a.value), dimensionless, [[a, 1 / (1 + a.value * a.value)]], radian());
+	return propagateOne(elementary.atan(a.value), dimensionless, a, 1 / (1 + a.value * a.value), radian());
 }
 
 const angle = 'an angle or a number';

@@ -1,13 +1,7 @@
-import {
-	divideDimensions,
-	isDimensionless,
-	multiplyDimensions,
-	raiseDimension,
-	dimensionless
-} from './dimension';
+import { isDimensionless, raiseDimension, dimensionless } from './dimension';
 import { ln as lnOf, pow } from './elementary';
 import { QuantityProblem } from './problems';
-import { isDifference, markDifference, propagate, type Quantity } from './quantity';
+import { isDifference, markDifference, propagateOne, propagateTwo, type Quantity } from './quantity';
 import { isTemperature, requireNumber, requireSame, requireTemperature } from './require';
 import { divideUnits, intervalUnit, multiplyUnits, raiseUnit, unitOne } from './units';
 
@@ -21,7 +15,7 @@ export function add(a: Quantity, b: Quantity): Quantity {
 	}
 	const point = a.point || b.point;
 	const unit = b.point ? b.unit : a.unit;
-	const result = propagate(a.value + b.value, a.dimension, [[a, 1], [b, 1]], unit, point); // prettier-ignore
+	const result = propagateTwo(a.value + b.value, a.dimension, a, 1, b, 1, unit, point);
 	return markDifference(result, isDifference(a) && isDifference(b));
 }
 
@@ -29,28 +23,28 @@ export function subtract(a: Quantity, b: Quantity): Quantity {
 	requireSame(a, b, 'subtracted');
 	const point = a.point && !b.point;
 	const unit = point ? a.unit : intervalUnit(a.unit);
-	const result = propagate(a.value - b.value, a.dimension, [[a, 1], [b, -1]], unit, point); // prettier-ignore
+	const result = propagateTwo(a.value - b.value, a.dimension, a, 1, b, -1, unit, point);
 	return markDifference(result, (a.point && b.point) || (isDifference(a) && isDifference(b)));
 }
 
 export function multiply(a: Quantity, b: Quantity): Quantity {
-	const dimension = multiplyDimensions(a.dimension, b.dimension);
 	const unit = multiplyUnits(a.unit, b.unit);
-	const result = propagate(a.value * b.value, dimension, [[a, b.value], [b, a.value]], unit); // prettier-ignore
+	const { dimension } = unit;
+	const result = propagateTwo(a.value * b.value, dimension, a, b.value, b, a.value, unit);
 	return markDifference(result, (isDifference(a) || isDifference(b)) && isTemperature(result));
 }
 
 export function divide(a: Quantity, b: Quantity): Quantity {
 	if (b.value === 0) throw new QuantityProblem('domain', 'A division by zero.');
 	const value = a.value / b.value;
-	const dimension = divideDimensions(a.dimension, b.dimension);
 	const unit = divideUnits(a.unit, b.unit);
-	const result = propagate(value, dimension, [[a, 1 / b.value], [b, -value / b.value]], unit); // prettier-ignore
+	const { dimension } = unit;
+	const result = propagateTwo(value, dimension, a, 1 / b.value, b, -value / b.value, unit);
 	return markDifference(result, isDifference(a) && isTemperature(result));
 }
 
 export function negate(a: Quantity): Quantity {
-	return markDifference(propagate(-a.value, a.dimension, [[a, -1]], intervalUnit(a.unit)), isDifference(a));
+	return markDifference(propagateOne(-a.value, a.dimension, a, -1, intervalUnit(a.unit)), isDifference(a));
 }
 
 /** a to the power b; b is a number without dimension, and exact unless a has none either. */
@@ -71,7 +65,7 @@ export function power(a: Quantity, b: Quantity): Quantity {
 	}
 	const unit = isDimensionless(dimension) ? unitOne : raiseUnit(a.unit, b.value, dimension);
 	const towardsExponent = b.parts.size === 0 || value === 0 ? 0 : value * lnOf(a.value);
-	return propagate(value, dimension, [[a, towardsBase], [b, towardsExponent]], unit); // prettier-ignore
+	return propagateTwo(value, dimension, a, towardsBase, b, towardsExponent, unit);
 }
 
 export function squareRoot(a: Quantity): Quantity {
@@ -82,7 +76,7 @@ export function squareRoot(a: Quantity): Quantity {
 	}
 	const dimension = raiseDimension(a.dimension, 0.5);
 	const slope = value === 0 ? 0 : 0.5 / value;
-	return propagate(value, dimension, [[a, slope]], raiseUnit(a.unit, 0.5, dimension));
+	return propagateOne(value, dimension, a, slope, raiseUnit(a.unit, 0.5, dimension));
 }
 
 export function absolute(a: Quantity): Quantity {
@@ -90,7 +84,7 @@ export function absolute(a: Quantity): Quantity {
 		throw new QuantityProblem('domain', 'The amount of an uncertain zero has no linear uncertainty.');
 	}
 	const sign = a.value < 0 ? -1 : 1;
-	const result = propagate(Math.abs(a.value), a.dimension, [[a, sign]], intervalUnit(a.unit));
+	const result = propagateOne(Math.abs(a.value), a.dimension, a, sign, intervalUnit(a.unit));
 	return markDifference(result, isDifference(a));
 }
 
@@ -104,5 +98,5 @@ export function thermodynamicTemperature(a: Quantity): Quantity {
 		);
 	}
 	if (a.value <= 0) throw new QuantityProblem('domain', 'A temperature at or below absolute zero.');
-	return propagate(a.value, a.dimension, [[a, 1]], intervalUnit(a.unit));
+	return propagateOne(a.value, a.dimension, a, 1, intervalUnit(a.unit));
 }

@@ -96,23 +96,79 @@ export function propagate(
 	unit: Unit,
 	point = false
 ): Quantity {
-	if (!Number.isFinite(value)) throw new QuantityProblem('not-finite', 'The result is not a finite number.');
-	const parts = new Map<Source, number>();
+	requireFinite(value);
+	let parts: Map<Source, number> | null = null;
 	for (const [input, derivative] of inputs) {
-		if (derivative === 0) continue;
-		for (const [source, part] of input.parts) {
-			const size = derivative * part;
-			if (!(Math.abs(size) < largestPart)) {
-				throw new QuantityProblem('not-finite', 'The uncertainty of the result is beyond all numbers.');
-			}
-			if (Math.abs(size) > smallestPart) addPart(parts, source, size);
-		}
+		if (derivative === 0 || input.parts.size === 0) continue;
+		parts ??= new Map<Source, number>();
+		addScaled(parts, input.parts, derivative);
 	}
+	return { value, dimension, unit, point, parts: parts ?? noParts };
+}
+
+/** `propagate` for one input, as most functions have it: every cell of every row comes through here. */
+export function propagateOne(
+	value: number,
+	dimension: Dimension,
+	input: Quantity,
+	derivative: number,
+	unit: Unit,
+	point = false
+): Quantity {
+	requireFinite(value);
+	return { value, dimension, unit, point, parts: scaled(input.parts, derivative) };
+}
+
+/** `propagate` for two inputs. */
+export function propagateTwo(
+	value: number,
+	dimension: Dimension,
+	a: Quantity,
+	towardsA: number,
+	b: Quantity,
+	towardsB: number,
+	unit: Unit,
+	point = false
+): Quantity {
+	requireFinite(value);
+	const [partsA, partsB] = [a.parts, b.parts];
+	if (partsB.size === 0 || towardsB === 0) {
+		return { value, dimension, unit, point, parts: scaled(partsA, towardsA) };
+	}
+	if (partsA.size === 0 || towardsA === 0) {
+		return { value, dimension, unit, point, parts: scaled(partsB, towardsB) };
+	}
+	const parts = new Map<Source, number>();
+	addScaled(parts, partsA, towardsA);
+	addScaled(parts, partsB, towardsB);
 	return { value, dimension, unit, point, parts };
+}
+
+function scaled(parts: LinearParts, derivative: number): LinearParts {
+	if (parts.size === 0 || derivative === 0) return noParts;
+	if (derivative === 1) return parts;
+	const result = new Map<Source, number>();
+	addScaled(result, parts, derivative);
+	return result;
+}
+
+function addScaled(sums: Map<Source, number>, parts: LinearParts, derivative: number): void {
+	for (const [source, part] of parts) {
+		const size = derivative * part;
+		if (!(Math.abs(size) < largestPart)) {
+			throw new QuantityProblem('not-finite', 'The uncertainty of the result is beyond all numbers.');
+		}
+		if (Math.abs(size) > smallestPart) addPart(sums, source, size);
+	}
+}
+
+function requireFinite(value: number): void {
+	if (!Number.isFinite(value)) throw new QuantityProblem('not-finite', 'The result is not a finite number.');
 }
 
 /** Tells the quantity in another unit of the same dimension; the value itself does not change. */
 export function toldIn(quantity: Quantity, unit: Unit): Quantity {
+	if (quantity.unit === unit && unit.offset === 0) return quantity;
 	if (!sameDimension(quantity.dimension, unit.dimension)) {
 		throw new QuantityProblem(
 			'dimension',

@@ -34,40 +34,48 @@ export interface Surroundings {
  */
 export function evaluateFormula(formula: Formula, from: Surroundings): Quantity {
 	from.step();
-	const value = (part: Formula) => evaluateFormula(part, from);
 	switch (formula.op) {
 		case 'number':
 			return plainNumber(formula.value);
 		case 'unit':
-			return { ...exactly(1, parseUnit(formula.unit)), point: false };
+			return oneOf(formula.unit);
 		case 'name':
 		case 'column':
 		case 'over':
 			return from.quantity(formula);
 		case 'negate':
-			return negate(value(formula.of));
+			return negate(evaluateFormula(formula.of, from));
 		case 'add':
-			return add(value(formula.left), value(formula.right));
+			return add(evaluateFormula(formula.left, from), evaluateFormula(formula.right, from));
 		case 'subtract':
-			return subtract(value(formula.left), value(formula.right));
+			return subtract(evaluateFormula(formula.left, from), evaluateFormula(formula.right, from));
 		case 'multiply':
-			return multiply(value(formula.left), value(formula.right));
+			return multiply(evaluateFormula(formula.left, from), evaluateFormula(formula.right, from));
 		case 'divide':
-			return divide(value(formula.left), value(formula.right));
+			return divide(evaluateFormula(formula.left, from), evaluateFormula(formula.right, from));
 		case 'power':
-			return power(value(formula.left), value(formula.right));
+			return power(evaluateFormula(formula.left, from), evaluateFormula(formula.right, from));
 		case 'if':
-			return value(holds(formula.condition, from) ? formula.yes : formula.no);
+			return evaluateFormula(holds(formula.condition, from) ? formula.yes : formula.no, from);
 		case 'call': {
 			const known = Object.hasOwn(valueFunctions, formula.function)
 				? valueFunctions[formula.function]
 				: undefined;
 			if (!known) throw new QuantityProblem('domain', `There is no function ${formula.function}.`);
-			return known.of(formula.arguments.map(value));
+			return known.of(formula.arguments.map((part) => evaluateFormula(part, from)));
 		}
 		default:
 			throw new QuantityProblem('domain', 'A condition or a text stands where a value is wanted.');
 	}
+}
+
+const ones = new Map<string, Quantity>();
+
+/** One of a unit, as it stands in a formula. */
+function oneOf(unit: string): Quantity {
+	let one = ones.get(unit);
+	if (!one) ones.set(unit, (one = { ...exactly(1, parseUnit(unit)), point: false }));
+	return one;
 }
 
 /** Whether a condition holds. */

@@ -58,36 +58,33 @@ export class Lookup {
 	}
 
 	at(context: RowState | null, manner: Manner): Surroundings {
-		const surroundings: Surroundings = {
-			quantity: (leaf) => {
-				if (leaf.op === 'name') return there(this.names.get(leaf.name), leaf.name);
-				if (leaf.op === 'column') return there(this.cell(context, leaf.table, leaf.column), leaf.column);
-				return this.over(leaf, context, surroundings, manner);
-			},
-			text: (leaf) => {
-				if (leaf.op === 'choice') return there(this.choices.get(leaf.name), leaf.name);
-				const row = context && ancestorIn(context, leaf.table);
-				return row ? textOf(row.row.cells, leaf.column).trim() : '';
-			},
-			given: (leaf) =>
-				leaf.op === 'name'
-					? this.names.has(leaf.name)
-					: leaf.op === 'column' && this.cell(context, leaf.table, leaf.column) !== undefined,
-			step: () => {
-				this.steps += 1;
-				if (this.steps > mostSteps) {
-					throw new QuantityProblem('domain', 'This takes more steps than are allowed. Take fewer rows.');
-				}
-			}
-		};
-		return surroundings;
+		return new At(this, context, manner);
 	}
 
-	private cell(context: RowState | null, table: string, column: string): Quantity | undefined {
+	named(name: string): Quantity {
+		return there(this.names.get(name), name);
+	}
+
+	hasName(name: string): boolean {
+		return this.names.has(name);
+	}
+
+	chosen(name: string): string {
+		return there(this.choices.get(name), name);
+	}
+
+	count(): void {
+		this.steps += 1;
+		if (this.steps > mostSteps) {
+			throw new QuantityProblem('domain', 'This takes more steps than are allowed. Take fewer rows.');
+		}
+	}
+
+	cell(context: RowState | null, table: string, column: string): Quantity | undefined {
 		return context ? ancestorIn(context, table)?.values.get(column) : undefined;
 	}
 
-	private over(leaf: Over, context: RowState | null, outer: Surroundings, manner: Manner): Quantity {
+	over(leaf: Over, context: RowState | null, outer: Surroundings, manner: Manner): Quantity {
 		const head = this.rows.familyHead(leaf.table, context);
 		const columns = this.columnsOf(leaf, head, manner);
 		const places = leaf.arguments.slice(columns.length).map((place) => evaluateFormula(place, outer));
@@ -159,6 +156,36 @@ export class Lookup {
 			resolution: repeated ? stepSource(column) : null,
 			resolutionSize: repeated ? stepSize(column) : 0
 		};
+	}
+}
+
+/** The leaves of formulas at one row, or at none. */
+class At implements Surroundings {
+	constructor(
+		private readonly lookup: Lookup,
+		private readonly context: RowState | null,
+		private readonly manner: Manner
+	) {}
+
+	quantity(leaf: Leaf): Quantity {
+		if (leaf.op === 'name') return this.lookup.named(leaf.name);
+		if (leaf.op === 'over') return this.lookup.over(leaf, this.context, this, this.manner);
+		return there(this.lookup.cell(this.context, leaf.table, leaf.column), leaf.column);
+	}
+
+	text(leaf: Extract<Formula, { op: 'cell' | 'choice' }>): string {
+		if (leaf.op === 'choice') return this.lookup.chosen(leaf.name);
+		const row = this.context && ancestorIn(this.context, leaf.table);
+		return row ? textOf(row.row.cells, leaf.column).trim() : '';
+	}
+
+	given(leaf: Leaf): boolean {
+		if (leaf.op === 'name') return this.lookup.hasName(leaf.name);
+		return leaf.op === 'column' && this.lookup.cell(this.context, leaf.table, leaf.column) !== undefined;
+	}
+
+	step(): void {
+		this.lookup.count();
 	}
 }
 

@@ -1,13 +1,5 @@
-import {
-	exactly,
-	intervalUnit,
-	parseTypedNumber,
-	parseUnit,
-	withDeviations,
-	type Quantity,
-	type TypedNumber
-} from '$lib/quantities';
-import type { Deviation, Sources, Standing } from './sources';
+import { exactly, parseTypedNumber, parseUnit, type Quantity, type TypedNumber } from '$lib/quantities';
+import type { Sources, Standing } from './sources';
 import type { ColumnDefinition, ParameterDefinition, Problem } from './types';
 
 type Definition = Pick<
@@ -49,38 +41,16 @@ export function readValue(
 		const message = `${address}: "${typed.trim()}" is larger than any quantity here. Kept as typed.`;
 		return { quantity: null, empty: false, problems: [{ severity: 'error', code: 'too-large', message }] };
 	}
-	const deviations = deviationsOf(number, definition, standing, sources);
-	const quantity = withDeviations(
-		value,
-		deviations.map(({ source, size, acts }) => [
-			source,
-			acts === 'gain' ? size * number.value * unit.factor : size
-		])
-	);
-	return { quantity, empty: false, problems: doubts(number, typed, definition, address) };
+	const own = number.value * unit.factor;
+	const parts = sources.partsOf(definition, standing, own, number.standardUncertainty);
+	return {
+		quantity: { ...value, parts },
+		empty: false,
+		problems: doubts(number, typed, definition, address)
+	};
 }
 
-function deviationsOf(
-	number: TypedNumber,
-	definition: Definition,
-	standing: Standing,
-	sources: Sources
-): Deviation[] {
-	const factor = intervalUnit(parseUnit(definition.unit)).factor;
-	const shared = definition.uncertainty.filter(({ scope }) => scope !== 'reading');
-	const deviations = shared.map((component) => sources.deviation(component, standing));
-	if (number.standardUncertainty !== null) {
-		// who states an uncertainty with the reading knows its scatter; the instrument's shared part stays
-		return [...deviations, sources.stated(number.standardUncertainty * factor, standing, definition.label)];
-	}
-	for (const component of definition.uncertainty) {
-		if (component.scope === 'reading') deviations.push(sources.deviation(component, standing));
-	}
-	if (definition.resolution !== null) {
-		deviations.push(sources.resolution(Number(definition.resolution) * factor, standing, definition.label));
-	}
-	return deviations;
-}
+const noDoubts: ValueReading['problems'] = [];
 
 function doubts(
 	number: TypedNumber,
@@ -88,6 +58,9 @@ function doubts(
 	definition: Definition,
 	address: string
 ): ValueReading['problems'] {
+	const range = definition.plausible;
+	const outside = range && (number.value < range.low || number.value > range.high);
+	if (number.doubt === null && number.plusMinus === null && !outside) return noDoubts;
 	const problems: ValueReading['problems'] = [];
 	const text = typed.trim();
 	if (number.doubt === 'comma-before-three-digits') {
@@ -104,8 +77,7 @@ function doubts(
 			message: `${address}: "${text}" does not say what its ± is, so it is not used. For a standard uncertainty type it in parentheses, as in 1.394(12).`
 		});
 	}
-	const range = definition.plausible;
-	if (range && (number.value < range.low || number.value > range.high)) {
+	if (outside) {
 		problems.push({
 			severity: 'warning',
 			code: 'outside-plausible',

@@ -77,6 +77,7 @@ export class Rows {
 		if (!inPlace) for (const state of before) left.set(state.row.id, state);
 		const keysBefore = new Set<string>();
 		const isParent = this.isParent(table.name);
+		const shared = new Map<RowState, ReadonlyMap<string, RowState>>();
 		const after = rows.map((row, i) => {
 			const known = inPlace ? before[i] : left.get(row.id);
 			if (known && !inPlace) left.delete(row.id);
@@ -88,10 +89,10 @@ export class Rows {
 			state.row = row;
 			if (!same || this.parentChanged(table, state, keys)) {
 				const parents = [...state.parents.values()];
-				readRow(state, table, { number: i + 1, parents: keys, isParent, twice }, sources);
+				readRow(state, table, { number: i + 1, parents: keys, isParent, twice, shared }, sources);
 				this.follow(table.name, state, parents);
 				this.mark(state);
-				if (state.unknown.length > 0) this.unknown.add(state);
+				if (state.unknown) this.unknown.add(state);
 				else this.unknown.delete(state);
 			}
 			keysBefore.add(key);
@@ -145,7 +146,7 @@ export class Rows {
 	unknownColumns(): { table: string; column: string }[] {
 		const found = new Map<string, { table: string; column: string }>();
 		for (const { table, unknown } of this.unknown)
-			for (const column of unknown) found.set(`${table} ${column}`, { table, column });
+			for (const column of unknown ?? []) found.set(`${table} ${column}`, { table, column });
 		return [...found.values()];
 	}
 

@@ -23,25 +23,25 @@ export interface RowState {
 	complete: boolean;
 	/** number columns, typed and computed */
 	values: Map<string, Quantity>;
-	/** table -> the row of it that this one belongs to */
-	parents: Map<string, RowState>;
-	/** columns of its own readings that could not be computed */
-	failed: Set<string>;
+	/** table -> the row of it that this one belongs to; rows of one family may share it */
+	parents: ReadonlyMap<string, RowState>;
+	/** columns of its own readings that could not be computed; null for none, as in most rows */
+	failed: Set<string> | null;
 	/** column -> what is wrong with the cell */
-	cellProblems: Map<string, string>;
+	cellProblems: Map<string, string> | null;
 	/** what reading it found */
-	problems: Problem[];
+	problems: Problem[] | null;
 	/** its key stands in a row above */
 	twice: boolean;
 	/** columns that its table does not have */
-	unknown: string[];
+	unknown: string[] | null;
 	/** what was drawn of it last, for as long as nothing in it changes */
 	shown: ShownRow | null;
 }
 
 /** Whether a row enters what is computed over rows: used, readable, and belonging to a row in use. */
 export function inUse(state: RowState): boolean {
-	if (!state.complete || state.row.status !== 'used' || state.failed.size > 0) return false;
+	if (!state.complete || state.row.status !== 'used' || (state.failed?.size ?? 0) > 0) return false;
 	for (const parent of state.parents.values()) if (!inUse(parent)) return false;
 	return true;
 }
@@ -76,7 +76,11 @@ export interface RowPlace {
 	isParent: boolean;
 	/** its key stands in a row above */
 	twice: boolean;
+	/** maps of one parent, by it */
+	shared: Map<RowState, ReadonlyMap<string, RowState>>;
 }
+
+const noParents: ReadonlyMap<string, RowState> = new Map();
 
 export function newRow(table: string, row: ReadingRow): RowState {
 	return {
@@ -86,11 +90,11 @@ export function newRow(table: string, row: ReadingRow): RowState {
 		blank: true,
 		complete: false,
 		values: new Map(),
-		parents: new Map(),
-		failed: new Set(),
-		cellProblems: new Map(),
-		problems: [],
-		unknown: [],
+		parents: noParents,
+		failed: null,
+		cellProblems: null,
+		problems: null,
+		unknown: null,
 		twice: false,
 		shown: null
 	};
@@ -102,76 +106,122 @@ export function newRow(table: string, row: ReadingRow): RowState {
  */
 export function readRow(state: RowState, table: TableDefinition, place: RowPlace, sources: Sources): void {
 	const { row } = state;
-	const typed = table.columns.filter((column) => column.formula === null);
+	const { typed, names } = planOf(table);
 	state.number = place.number;
 	state.twice = place.twice;
-	state.blank = typed.every((column) => textOf(row.cells, column.name).trim() === '');
+	state.blank = typed.every(({ column }) => textOf(row.cells, column.name).trim() === '');
 	state.complete = false;
 	state.values.clear();
-	state.parents.clear();
-	state.failed.clear();
-	state.cellProblems.clear();
-	state.problems = [];
-	state.unknown = Object.keys(row.cells).filter(
-		(name) => !table.columns.some((column) => column.name === name)
-	);
-	const at = { table: table.name, row: row.id };
+	state.parents = noParents;
+	state.failed = null;
+	state.cellProblems = null;
+	state.problems = null;
+	state.unknown = null;
+	for (const name in row.cells) if (!names.has(name)) (state.unknown ??= []).push(name);
 	if (row.status !== 'used' && (row.reason ?? '').trim() === '') {
 		const message = `Row ${state.number} is ${row.status} without a reason. Write one.`;
-		state.problems.push({ severity: 'warning', code: 'reason-missing', message, ...at });
+		tell(state, { severity: 'warning', code: 'reason-missing', message });
 	}
 	if (state.blank) return;
-	for (const { of, name } of typed) {
-		const parent = of === null ? undefined : place.parents.get(of)?.get(textOf(row.cells, name).trim());
-		if (of !== null && parent) state.parents.set(of, parent);
-	}
+	state.parents = parentsOf(state, typed, place);
 	const [parent] = state.parents.values();
 	const run = place.isParent ? row.id : (parent?.row.id ?? '');
+	const anew = place.isParent ? 'run' : 'reading';
 	let complete = true;
-	for (const column of typed) {
-		const standing: Standing = {
-			place: `${table.name}.${column.name}`,
-			run,
-			anew: place.isParent ? 'run' : 'reading'
-		};
-		const found = readCell(column, row, state.number, standing, sources);
+	for (const { column, at } of typed) {
+		const found = readCell(column, row, state.number, { place: at, run, anew }, sources);
 		if (found.quantity) state.values.set(column.name, found.quantity);
 		const missing = column.required && (column.kind === 'number' ? found.quantity === null : found.empty);
-		const problems = [...found.problems, ...doubts(state, table, column, found.empty, missing, place)];
-		if (missing || problems.some(({ code }) => code === 'no-such-row' || code === 'key-twice'))
-			complete = false;
-		const [first] = problems;
-		if (first) state.cellProblems.set(column.name, first.message);
-		for (const problem of problems) state.problems.push({ ...problem, ...at, column: column.name });
+		for (const problem of found.problems) tell(state, problem, column.name);
+		const doubt = doubtAbout(state, table, column, found.empty, missing, place);
+		if (doubt) tell(state, doubt, column.name);
+		if (missing || doubt?.code === 'no-such-row' || doubt?.code === 'key-twice') complete = false;
 	}
 	state.complete = complete;
 }
 
+interface Plan {
+	typed: { column: ColumnDefinition; /** 'readings.p' */ at: string }[];
+	names: Set<string>;
+}
+
+const plans = new WeakMap<TableDefinition, Plan>();
+
+function planOf(table: TableDefinition): Plan {
+	let plan = plans.get(table);
+	if (!plan) {
+		const typed = table.columns.filter((column) => column.formula === null);
+		plan = {
+			typed: typed.map((column) => ({ column, at: `${table.name}.${column.name}` })),
+			names: new Set(table.columns.map(({ name }) => name))
+		};
+		plans.set(table, plan);
+	}
+	return plan;
+}
+
+function tell(
+	state: RowState,
+	problem: Pick<Problem, 'severity' | 'code' | 'message'>,
+	column?: string
+): void {
+	const place = { table: state.table, row: state.row.id };
+	(state.problems ??= []).push({ ...problem, ...place, ...(column === undefined ? {} : { column }) });
+	if (column === undefined || state.cellProblems?.has(column) === true) return;
+	(state.cellProblems ??= new Map()).set(column, problem.message);
+}
+
+/** Rows that belong to one parent alone share one map of it. */
+function parentsOf(
+	{ row }: RowState,
+	typed: Plan['typed'],
+	{ parents, shared }: RowPlace
+): ReadonlyMap<string, RowState> {
+	let found: Map<string, RowState> | null = null;
+	let only: RowState | null = null;
+	for (const { column } of typed) {
+		if (column.of === null) continue;
+		const parent = parents.get(column.of)?.get(textOf(row.cells, column.name).trim());
+		if (!parent) continue;
+		if (only === null && found === null) {
+			only = parent;
+			continue;
+		}
+		found ??= only ? new Map([[only.table, only]]) : new Map<string, RowState>();
+		found.set(column.of, parent);
+	}
+	if (found) return found;
+	if (!only) return noParents;
+	let map = shared.get(only);
+	if (!map) shared.set(only, (map = new Map([[only.table, only]])));
+	return map;
+}
+
 /** What is wrong with a cell beyond its number: nothing there, a row that is not there, a key that stands twice. */
-function doubts(
+function doubtAbout(
 	{ row, number, parents }: RowState,
 	table: TableDefinition,
 	column: ColumnDefinition,
 	empty: boolean,
 	missing: boolean,
 	place: RowPlace
-): Pick<Problem, 'severity' | 'code' | 'message'>[] {
+): Pick<Problem, 'severity' | 'code' | 'message'> | null {
 	const address = `Row ${number}, ${column.name}`;
 	if (empty) {
-		if (!missing || row.status !== 'used') return [];
+		if (!missing || row.status !== 'used') return null;
 		const message = `${address}: nothing typed. The row stays out of the workings.`;
-		return [{ severity: 'warning', code: 'cell-missing', message }];
+		return { severity: 'warning', code: 'cell-missing', message };
 	}
 	const text = textOf(row.cells, column.name).trim();
 	if (column.of !== null && !parents.has(column.of)) {
 		const message = `${address}: "${text}" is not in the table ${column.of}. Add it there, or look at the spelling.`;
-		return [{ severity: 'error', code: 'no-such-row', message }];
+		return { severity: 'error', code: 'no-such-row', message };
 	}
 	if (column.name === table.key && place.twice) {
 		const message = `${address}: "${text}" stands in an earlier row. Give this one another name.`;
-		return [{ severity: 'error', code: 'key-twice', message }];
+		return { severity: 'error', code: 'key-twice', message };
 	}
-	return [];
+	return null;
 }
 
 function readCell(

@@ -136,8 +136,8 @@ export class Session {
 		const found = this.foundAt(facts);
 		for (const row of this.touched(facts, table)) {
 			found.delete(row);
-			row.failed.delete(column.name);
-			row.cellProblems.delete(column.name);
+			row.failed?.delete(column.name);
+			row.cellProblems?.delete(column.name);
 			row.values.delete(column.name);
 			this.rows.mark(row);
 			if (row.blank) continue;
@@ -150,7 +150,7 @@ export class Session {
 				const problem = this.columnProblem(facts, column, row, cause);
 				if (problem) found.set(row, problem);
 				if (local && (cause instanceof QuantityProblem || this.isParameter(cause)))
-					row.failed.add(column.name);
+					(row.failed ??= new Set()).add(column.name);
 			}
 		}
 	}
@@ -168,7 +168,7 @@ export class Session {
 		const place = { table: row.table, column: column.name };
 		if (cause instanceof QuantityProblem) {
 			const message = `Row ${row.number}, ${column.name}: ${cause.message}`;
-			row.cellProblems.set(column.name, message);
+			(row.cellProblems ??= new Map()).set(column.name, message);
 			return { severity: 'error', code: cause.code, message, ...place, row: row.row.id };
 		}
 		if (!(cause instanceof NotThere)) throw cause;
@@ -314,7 +314,7 @@ export class Session {
 	private gatherProblems(ofParameters: readonly Problem[], readings: Readings): Problem[] {
 		const problems = [...ofParameters];
 		for (const rows of this.rows.tables.values())
-			for (const row of rows) if (row.problems.length > 0) problems.push(...row.problems);
+			for (const row of rows) if (row.problems) problems.push(...row.problems);
 		problems.push(...unknownNames(this.worksheet, readings, this.rows.unknownColumns()));
 		for (const facts of this.facts) {
 			const found = [...(this.found.get(facts) ?? [])].filter(([row]) => row === null || this.isHere(row));

@@ -61,7 +61,7 @@ function showColumn({
 
 /** What was typed stays as typed; what is computed is cut to its own uncertainty. */
 function showCell(state: RowState, column: ColumnDefinition): ShownCell {
-	const problem = state.cellProblems.get(column.name) ?? null;
+	const problem = state.cellProblems?.get(column.name) ?? null;
 	const typed = textOf(state.row.cells, column.name);
 	const quantity = state.values.get(column.name);
 	if (!quantity)

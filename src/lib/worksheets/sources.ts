@@ -1,15 +1,8 @@
-import { intervalUnit, parseUnit, type Component, type Scope, type Source } from '$lib/quantities';
+import { addPart, intervalUnit, parseUnit, type Component, type Scope, type Source } from '$lib/quantities';
 import type { UncertaintyComponent } from './types';
 
 /** A half-width as a standard deviation (GUM 4.3.7 and 4.3.9). */
 const spread = { normal: 1, rectangular: Math.sqrt(3), triangular: Math.sqrt(6) } as const;
-
-export interface Deviation {
-	source: Source;
-	/** standard uncertainty in SI; for a gain, a fraction */
-	size: number;
-	acts: 'offset' | 'gain';
-}
 
 /** Where a reading stands: what makes its components' ids unique, and which run a deviation of scope 'run' belongs to. */
 export interface Standing {
@@ -21,61 +14,111 @@ export interface Standing {
 	anew: Extract<Scope, 'reading' | 'run'>;
 }
 
+/** What states a reading's uncertainty: a column or a parameter. */
+export interface Uncertain {
+	label: string;
+	unit: string;
+	resolution: string | null;
+	uncertainty: UncertaintyComponent[];
+}
+
+/** A component as every reading of one column has it. */
+interface Part {
+	component: Component;
+	/** standard uncertainty in SI; for a gain, a fraction */
+	size: number;
+	gain: boolean;
+}
+
+interface Plan {
+	factor: number;
+	shared: Part[];
+	own: Part[];
+}
+
 /**
  * Hands out the sources of one worksheet at work. A shared component is one deviation wherever its name appears, so that a
  * thermometer's offset moves every row alike; one of scope 'run' is one for each run; a reading-scope component is a new
- * deviation at every call.
+ * deviation in every reading.
  */
 export class Sources {
 	private readonly components = new Map<string, Component>();
 	private readonly shared = new Map<string, Source>();
 	private readonly distributions = new Map<Component, UncertaintyComponent['distribution']>();
+	private readonly plans = new Map<string, Plan>();
 
-	deviation(definition: UncertaintyComponent, standing: Standing): Deviation {
-		const size = definition.size / spread[definition.distribution];
-		const factor = definition.acts === 'gain' ? 1 : intervalUnit(parseUnit(definition.unit)).factor;
-		return { source: this.source(definition, standing), size: size * factor, acts: definition.acts };
+	/**
+	 * The linear parts of one reading, `value` in SI without its scale's zero. Who states an uncertainty with the reading
+	 * (`stated`, in its unit) knows its scatter: it stands in place of what the column says, and shared parts stay.
+	 */
+	partsOf(
+		definition: Uncertain,
+		standing: Standing,
+		value: number,
+		stated: number | null
+	): Map<Source, number> {
+		const { place, anew, run } = standing;
+		const plan = this.planOf(definition, place, anew);
+		const parts = new Map<Source, number>();
+		for (const part of plan.shared)
+			addPart(parts, this.sharedSource(part, run), part.gain ? part.size * value : part.size);
+		if (stated !== null) {
+			const label = `${definition.label}, stated with the reading`;
+			const facts = { label, scope: anew, degreesOfFreedom: Infinity };
+			parts.set({ component: this.component(`${place}:stated`, 'normal', facts) }, stated * plan.factor);
+			return parts;
+		}
+		for (const { component, size, gain } of plan.own) {
+			const part = gain ? size * value : size;
+			if (part !== 0) parts.set({ component }, part);
+		}
+		return parts;
 	}
 
-	/** Half the last digit either way, rectangular; its own draw in every row. `step` in SI. */
-	resolution(step: number, { place, anew }: Standing, label: string): Deviation {
-		const component = this.component(`${place}:resolution`, 'rectangular', {
-			label: `Resolution of ${label.charAt(0).toLowerCase()}${label.slice(1)}`,
-			scope: anew,
-			degreesOfFreedom: Infinity
-		});
-		return { source: { component }, size: step / Math.sqrt(12), acts: 'offset' };
+	private planOf(definition: Uncertain, place: string, anew: Standing['anew']): Plan {
+		const known = this.plans.get(place);
+		if (known) return known;
+		const factor = intervalUnit(parseUnit(definition.unit)).factor;
+		const plan: Plan = { factor, shared: [], own: [] };
+		for (const stated of definition.uncertainty) {
+			const { scope, name, label, distribution, acts, size, unit } = stated;
+			const own = scope === 'reading';
+			const component = this.component(own ? `${place}:${name}` : name, distribution, {
+				label,
+				scope: own ? anew : scope,
+				degreesOfFreedom: stated.degreesOfFreedom ?? Infinity
+			});
+			const gain = acts === 'gain';
+			const si = (size / spread[distribution]) * (gain ? 1 : intervalUnit(parseUnit(unit)).factor);
+			(own ? plan.own : plan.shared).push({ component, size: si, gain });
+		}
+		if (definition.resolution !== null) {
+			// half the last digit either way, its own draw in every row
+			const { label } = definition;
+			const component = this.component(`${place}:resolution`, 'rectangular', {
+				label: `Resolution of ${label.charAt(0).toLowerCase()}${label.slice(1)}`,
+				scope: anew,
+				degreesOfFreedom: Infinity
+			});
+			const size = (Number(definition.resolution) * factor) / Math.sqrt(12);
+			plan.own.push({ component, size, gain: false });
+		}
+		this.plans.set(place, plan);
+		return plan;
 	}
 
-	/** An uncertainty typed with the value itself, as in 1.394(12). */
-	stated(size: number, { place, anew }: Standing, label: string): Deviation {
-		const component = this.component(`${place}:stated`, 'normal', {
-			label: `${label}, stated with the reading`,
-			scope: anew,
-			degreesOfFreedom: Infinity
-		});
-		return { source: { component }, size, acts: 'offset' };
+	private sharedSource({ component }: Part, run: string): Source {
+		const key = component.scope === 'run' ? `${component.id} ${run}` : component.id;
+		const known = this.shared.get(key);
+		if (known) return known;
+		const source: Source = { component };
+		this.shared.set(key, source);
+		return source;
 	}
 
 	/** What a component's deviations are drawn from; normal where nothing else was stated. */
 	distributionOf(component: Component): UncertaintyComponent['distribution'] {
 		return this.distributions.get(component) ?? 'normal';
-	}
-
-	private source(definition: UncertaintyComponent, { place, run, anew }: Standing): Source {
-		const degreesOfFreedom = definition.degreesOfFreedom ?? Infinity;
-		const { name, label, scope, distribution } = definition;
-		if (scope === 'reading') {
-			const facts = { label, scope: anew, degreesOfFreedom };
-			return { component: this.component(`${place}:${name}`, distribution, facts) };
-		}
-		const key = scope === 'run' ? `${name} ${run}` : name;
-		const known = this.shared.get(key);
-		if (known) return known;
-		const component = this.component(name, distribution, { label, scope, degreesOfFreedom });
-		const source: Source = { component };
-		this.shared.set(key, source);
-		return source;
 	}
 
 	private component(

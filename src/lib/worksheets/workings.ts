@@ -140,7 +140,9 @@ function partials(
 		const key = leafKey(leaf);
 		const size = standardUncertainty(input);
 		const output = probed(formula, {
-			...surroundings,
+			text: (other) => surroundings.text(other),
+			given: (other) => surroundings.given(other),
+			step: () => surroundings.step(),
 			quantity: (other) => {
 				const quantity = surroundings.quantity(other);
 				return { ...quantity, parts: leafKey(other) === key ? new Map([[probe, size]]) : new Map() };

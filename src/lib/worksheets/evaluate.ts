@@ -13,6 +13,7 @@ import type {
 	Evaluation,
 	FigureData,
 	Readings,
+	SampleCalculation,
 	ShownFit,
 	ShownQuantity,
 	Worksheet
@@ -52,6 +53,7 @@ export class Evaluator {
 	private readonly session: Session;
 	private readonly quantities = new WeakMap<Quantity, ShownQuantity>();
 	private readonly fits = new WeakMap<Fitted, ShownFit>();
+	private readonly calculations = new WeakMap<Quantity, SampleCalculation>();
 	private readonly series = new WeakMap<object, FigureData['series'][number]>();
 
 	constructor(worksheet: Worksheet) {
@@ -70,7 +72,7 @@ export class Evaluator {
 			fits: showFits(session, this.fits),
 			comparisons,
 			figures: showFigures(session, this.series),
-			workings: showWorkings(session)
+			workings: showWorkings(session, {}, this.calculations)
 		};
 	}
 

@@ -1,5 +1,5 @@
 import { ancestorsOf } from './relations';
-import { ancestorIn, newRow, readRow, rowsOf, textOf, type RowState } from './rows';
+import { ancestorIn, newRow, readRow, rowsOf, textOf, type RowPlace, type RowState } from './rows';
 import type { Sources } from './sources';
 import type { ReadingRow, Readings, TableDefinition, Worksheet } from './types';
 
@@ -18,6 +18,8 @@ export class Rows {
 	private readonly ancestors: ReadonlyMap<string, readonly string[]>;
 	private readonly parentFirst: readonly TableDefinition[];
 	private readonly parentTables: ReadonlySet<string>;
+	/** table -> its rows by key */
+	private readonly keyed = new Map<string, ReadonlyMap<string, RowState>>();
 	/** "table ancestor" -> its rows for each row of the ancestor */
 	private readonly families = new Map<string, Map<RowState, RowState[]>>();
 
@@ -75,6 +77,15 @@ export class Rows {
 		// the usual pass changes no row's place: only where it does are rows looked up by id
 		const inPlace = before.length === rows.length && rows.every((row, i) => before[i]?.row.id === row.id);
 		if (!inPlace) for (const state of before) left.set(state.row.id, state);
+		if (inPlace && this.isQuiet(table)) {
+			// nothing came, went, or changed its key: only rows that are other objects than before need a look
+			const changed = rows.flatMap((row, i) => (before[i]?.row === row ? [] : [i]));
+			if (changed.length === 0) return;
+			if (table.key === null) {
+				for (const i of changed) this.readAgain(table, before, rows, i, keys, sources);
+				return;
+			}
+		}
 		const keysBefore = new Set<string>();
 		const isParent = this.isParent(table.name);
 		const shared = new Map<RowState, ReadonlyMap<string, RowState>>();
@@ -88,12 +99,7 @@ export class Rows {
 				known !== undefined && known.number === i + 1 && known.twice === twice && sameRow(known.row, row);
 			state.row = row;
 			if (!same || this.parentChanged(table, state, keys)) {
-				const parents = [...state.parents.values()];
-				readRow(state, table, { number: i + 1, parents: keys, isParent, twice, shared }, sources);
-				this.follow(table.name, state, parents);
-				this.mark(state);
-				if (state.unknown) this.unknown.add(state);
-				else this.unknown.delete(state);
+				this.readInto(state, table, { number: i + 1, parents: keys, isParent, twice, shared }, sources);
 			}
 			keysBefore.add(key);
 			return state;
@@ -106,6 +112,45 @@ export class Rows {
 		}
 		this.tables.set(table.name, after);
 		this.forgetFamilies(table.name);
+	}
+
+	/** Whether the rows that a table's belong to are as they were. */
+	private isQuiet(table: TableDefinition): boolean {
+		return table.columns.every(
+			({ of }) => of === null || (this.changedIn(of).size === 0 && !this.reshaped.has(of))
+		);
+	}
+
+	private readAgain(
+		table: TableDefinition,
+		states: readonly RowState[],
+		rows: readonly ReadingRow[],
+		i: number,
+		keys: ReadonlyMap<string, ReadonlyMap<string, RowState>>,
+		sources: Sources
+	): void {
+		const [state, row] = [states[i], rows[i]];
+		if (!state || !row) return;
+		const same = sameRow(state.row, row);
+		state.row = row;
+		if (same) return;
+		const place = {
+			number: i + 1,
+			parents: keys,
+			isParent: this.isParent(table.name),
+			twice: false,
+			shared: new Map()
+		};
+		this.readInto(state, table, place, sources);
+	}
+
+	private readInto(state: RowState, table: TableDefinition, place: RowPlace, sources: Sources): void {
+		const parents = [...state.parents.values()];
+		readRow(state, table, place, sources);
+		this.follow(table.name, state, parents);
+		this.mark(state);
+		if (state.unknown) this.unknown.add(state);
+		else this.unknown.delete(state);
 	}
 
 	/** A row that went elsewhere is missed where it was. */
@@ -133,12 +178,15 @@ export class Rows {
 		});
 	}
 
-	private byKey({ name }: TableDefinition, key: string): Map<string, RowState> {
+	private byKey({ name }: TableDefinition, key: string): ReadonlyMap<string, RowState> {
+		const known = this.keyed.get(name);
+		if (known && this.changedIn(name).size === 0 && !this.reshaped.has(name)) return known;
 		const rows = new Map<string, RowState>();
 		for (const state of this.tables.get(name) ?? []) {
 			const text = textOf(state.row.cells, key).trim();
 			if (text !== '' && !rows.has(text)) rows.set(text, state);
 		}
+		this.keyed.set(name, rows);
 		return rows;
 	}
 

@@ -38,8 +38,15 @@ const mostByRow = 24;
  */
 export function showWorkings(
 	session: Session,
-	chosenRows: Readonly<Record<string, string>> = {}
+	chosenRows: Readonly<Record<string, string>> = {},
+	kept = new WeakMap<Quantity, SampleCalculation>()
 ): Record<string, SampleCalculation> {
+	/** A value that is the very same came about in the same way. */
+	const once = (name: string, quantity: Quantity, work: () => SampleCalculation): SampleCalculation => {
+		let calculation = kept.get(quantity);
+		if (calculation?.name !== name) kept.set(quantity, (calculation = work()));
+		return calculation;
+	};
 	const workings: Record<string, SampleCalculation> = {};
 	const byRow = new Set(thingsByRow(session.worksheet).map(({ name }) => name));
 	for (const table of session.worksheet.tables) {
@@ -54,7 +61,8 @@ export function showWorkings(
 					? chosen
 					: counting.find(({ values }) => values.has(column.name));
 			const value = row?.values.get(column.name);
-			if (row && value) workings[column.name] = workOut(session, column, formula, value, row);
+			if (row && value)
+				workings[column.name] = once(column.name, value, () => workOut(session, column, formula, value, row));
 		}
 	}
 	for (const { name, row, group, fitted } of fitsByName(session))
@@ -70,7 +78,9 @@ export function showWorkings(
 		const count = (counts.get(result.name) ?? 0) + 1;
 		counts.set(result.name, count);
 		if (count > mostByRow && row?.row.id !== chosenRows[row?.table ?? '']) continue;
-		workings[value.name] = workOut(session, namingFor(value), result.formula, quantity, row, naming);
+		workings[value.name] = once(value.name, quantity, () =>
+			workOut(session, namingFor(value), result.formula, quantity, row, naming)
+		);
 	}
 	return workings;
 }

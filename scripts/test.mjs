@@ -7,6 +7,7 @@ import { root } from './start/folder.mjs';
 import { checkNode, ensurePackages } from './start/packages.mjs';
 import { StartProblem } from './start/problem.mjs';
 import { gates, runGate } from './test/gates.mjs';
+import { ensurePython, pythonCommand } from './test/python.mjs';
 import { said, sum, tallyOfFile } from './test/tally.mjs';
 
 // `npm test`: every gate and every test; `npm test -- unit server` some parts. The last line is the count.
@@ -77,6 +78,10 @@ async function runProject(project) {
 		if (path) env.CHROMIUM_PATH = path;
 		else console.log(`The browser tests need Chromium. Run this, then test again:\n\n  ${installCommand}\n`);
 	}
+	if (project === 'reference' && !(await ensurePython((text) => console.log(`python: ${text}`))))
+		console.log(
+			`Some reference tests ask Debian's Python. To have them, run this and test again:\n\n  ${pythonCommand}\n`
+		);
 	const code = await vitest(project, env);
 	const { notes, ...tally } = tallyOfFile(join(reports, `${project}.json`), code);
 	for (const note of notes) console.log(note);

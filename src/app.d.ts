@@ -19,6 +19,8 @@ declare global {
 			trail?: { label: string; href: string; current?: boolean }[];
 			/** the sheets of a work: readings, workings, report... */
 			sheets?: { label: string; href: string; current?: boolean }[];
+			/** more places for "Go to…" */
+			goTo?: { label: string; href: string; under?: string }[];
 		}
 	}
 }

@@ -19,7 +19,7 @@ function parts(at: Date, zone: string): Record<string, string> {
 
 /**
  * An instant as the course's clocks show it. Without a form the shortest that cannot be mistaken `now`: the clock on
- * the same day, the weekday within six days, the date otherwise.
+ * the same day, the weekday within six days, the date within half a year, the year beyond.
  */
 export function courseTime(at: Date, zone: string, form?: TimeForm, now?: Date): string {
 	const p = parts(at, zone);
@@ -44,5 +44,6 @@ function formFor(at: Date, zone: string, now: Date | undefined): TimeForm {
 	const here = parts(at, zone);
 	const there = parts(now, zone);
 	if (['year', 'month', 'day'].every((part) => here[part] === there[part])) return 'clock';
-	return Math.abs(at.getTime() - now.getTime()) < 6 * dayInMs ? 'day' : 'full';
+	const days = Math.abs(at.getTime() - now.getTime()) / dayInMs;
+	return days < 6 ? 'day' : days < 180 ? 'date-clock' : 'full';
 }

@@ -1,38 +1,34 @@
-import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { plainNumber, standardUncertainty } from '$lib/quantities';
 import { fitLine, lineAt, type LineOptions } from '$lib/regression';
 import { exactLine } from './exact-line';
+import { columnsOf, digits, nistSets } from './nist';
 
 const scatter: LineOptions = { id: 'line', scatterLabel: 'Scatter', policy: 'scatter', weights: 'equal' };
 
-function digits(value: number, certified: number): number {
-	return value === certified ? 16 : -Math.log10(Math.abs(value / certified - 1));
-}
-
 interface Certified {
 	columns: string[];
-	data: [number, number][];
-	certified: { parameters: { estimate: string; standard_deviation: string }[]; residual_sd: string };
+	data: string[];
+	parameters: { estimate: string; sd: string }[];
+	residual_sd: string;
 }
 
 describe('NIST StRD, Norris', () => {
-	const { Norris } = JSON.parse(readFileSync(new URL('data/nist_norris.json', import.meta.url), 'utf8')) as {
-		Norris: Certified;
-	};
-	const x = Norris.data.map(([, each]) => each);
-	const y = Norris.data.map(([each]) => each);
+	const Norris = nistSets<Certified>('linear')['Norris'];
+	if (!Norris) throw new Error('Norris is not there.');
+	const columns = columnsOf(Norris.columns, Norris.data);
+	const [x, y] = ['x', 'y'].map((name) => (columns[name] ?? []).map(Number)) as [number[], number[]];
 	const fit = fitLine(x.map(plainNumber), y.map(plainNumber), scatter);
-	const [intercept, slope] = Norris.certified.parameters;
+	const [intercept, slope] = Norris.parameters;
 
 	it('meets at least nine certified digits', () => {
 		expect(Norris.columns).toEqual(['y', 'x']);
 		const worst = Math.min(
 			digits(fit.slope.value, Number(slope?.estimate)),
 			digits(fit.intercept.value, Number(intercept?.estimate)),
-			digits(standardUncertainty(fit.slope), Number(slope?.standard_deviation)),
-			digits(standardUncertainty(fit.intercept), Number(intercept?.standard_deviation)),
-			digits(fit.residualStandardDeviation ?? NaN, Number(Norris.certified.residual_sd))
+			digits(standardUncertainty(fit.slope), Number(slope?.sd)),
+			digits(standardUncertainty(fit.intercept), Number(intercept?.sd)),
+			digits(fit.residualStandardDeviation ?? NaN, Number(Norris.residual_sd))
 		);
 		expect(worst).toBeGreaterThan(9);
 	});
@@ -41,7 +37,7 @@ describe('NIST StRD, Norris', () => {
 		const exact = exactLine(x, y);
 		expect(digits(exact.slope, Number(slope?.estimate))).toBeGreaterThan(14);
 		expect(digits(exact.intercept, Number(intercept?.estimate))).toBeGreaterThan(14);
-		expect(digits(Math.sqrt(exact.slopeVariance), Number(slope?.standard_deviation))).toBeGreaterThan(14);
+		expect(digits(Math.sqrt(exact.slopeVariance), Number(slope?.sd))).toBeGreaterThan(14);
 		expect(digits(fit.slope.value, exact.slope)).toBeGreaterThan(14);
 		expect(digits(fit.intercept.value, exact.intercept)).toBeGreaterThan(12);
 	});

@@ -20,6 +20,8 @@ import {
 	fitNonlinear,
 	fitPolynomial,
 	FitProblem,
+	inverseOnCurve,
+	inversePrediction,
 	lineAt,
 	type Dual,
 	type FitOptions,
@@ -190,6 +192,35 @@ describe('models that are lines', () => {
 		expect(line.degreesOfFreedom).toBe(5);
 		expect(lineAt(line)(0).standard).toBe(0);
 		expect(() => fitLine(exact([0, 0]), exact([1, 2]), { ...options, through: 'origin' })).toThrow(/x = 0/);
+	});
+});
+
+describe('reading x off a curve', () => {
+	const unit = parseUnit('1');
+
+	it('agrees with the straight line', () => {
+		const y = withDeviations(plainNumber(5), [[source('reading'), 0.3]]);
+		const line = fitLine(exact(xs), exact(ys), options);
+		for (const fit of [
+			fitPolynomial(exact(xs), exact(ys), 1, options),
+			fitNonlinear(straight, [exact(xs)], exact(ys), exact([1, 1]), options)
+		]) {
+			// prettier-ignore
+			const [there, known] = [inverseOnCurve(fit, y, { from: 0, to: 9, unit }), inversePrediction(line, y)];
+			expect(there.value).toBeCloseTo(known.value, 9);
+			expect(standardUncertainty(there)).toBeCloseTo(standardUncertainty(known), 8);
+		}
+	});
+
+	it('follows a bent one, with the uncertainty of its band over its slope', () => {
+		const fit = fitNonlinear(relaxation, [exact(xs)], exact(ys), guess, options);
+		const x = inverseOnCurve(fit, plainNumber(5), { from: 0, to: 7, unit });
+		const band = fit.at([x.value]);
+		expect(band.value).toBeCloseTo(5, 10);
+		expect(standardUncertainty(fit.quantityAt([x.value]))).toBeCloseTo(band.standard, 12);
+		const slope = (fit.at([x.value + 1e-5]).value - fit.at([x.value - 1e-5]).value) / 2e-5;
+		expect(standardUncertainty(x)).toBeCloseTo(band.standard / Math.abs(slope), 8);
+		expect(() => inverseOnCurve(fit, plainNumber(50), { from: 0, to: 7, unit })).toThrow(FitProblem);
 	});
 });
 

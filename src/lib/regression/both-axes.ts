@@ -9,7 +9,7 @@ import {
 import { compensatedSum } from '$lib/statistics';
 import type { LineFit } from './line';
 import { leastSquares, noSpread } from './line-sums';
-import type { FitOptions } from './model-fit';
+import type { FitOptions } from './fit-types';
 import { FitProblem, outOfRange, requirePoints } from './problems';
 import { bothAxesDerivatives, readingSpreads, type Spread, type YorkLine } from './york';
 

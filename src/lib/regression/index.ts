@@ -1,11 +1,11 @@
 export { fitLine, lineAt, nextReadingAt, type LineFit, type LineOptions } from './line';
 export { fitBothAxes, type BothAxesFit } from './both-axes';
-export { inverseInterval, inversePrediction, type InverseOptions } from './inverse';
+export { inverseInterval, inverseOnCurve, inversePrediction, type InverseOptions } from './inverse';
 export { fitLinear } from './linear';
 export { fitPolynomial } from './polynomial';
 export { fitNonlinear } from './nonlinear';
 export type { Model } from './model-problem';
-export type { FitOptions, FitPolicy, FitWeights, ModelFit } from './model-fit';
+export type { FitOptions, FitPolicy, FitWeights, ModelFit } from './fit-types';
 export * as dual from './dual';
 export type { Dual } from './dual';
 export { FitProblem, type FitProblemCode } from './problems';

@@ -3,13 +3,17 @@ import {
 	coverageFactor,
 	covariance,
 	divide,
+	propagate,
 	subtract,
 	variance,
 	withDeviations,
 	type Component,
-	type Quantity
+	type Quantity,
+	type Unit
 } from '$lib/quantities';
+import type { ModelFit } from './fit-types';
 import type { LineFit } from './line';
+import { FitProblem } from './problems';
 
 export interface InverseOptions {
 	/** `y` is the mean of so many new readings that scatter as the fit's own points do (unit weight, policy 'scatter') */
@@ -61,4 +65,38 @@ export function inverseInterval(
 	if (!(a > 0)) return null;
 	const root = Math.sqrt(Math.max(0, b * b - a * c));
 	return { low: fit.centreX + (-b - root) / a, high: fit.centreX + (-b + root) / a };
+}
+
+const mostHalvings = 200;
+
+/**
+ * The x between `from` and `to` (SI) at which a fitted curve of one input reaches y, told in the unit of x given, with
+ * the linear parts of y and of the curve. The curve is taken to pass y once in between.
+ * @throws FitProblem 'not-finite' where it does not pass y there, or lies level where it does
+ */
+export function inverseOnCurve(
+	fit: ModelFit,
+	y: Quantity,
+	{ from, to, unit }: { from: number; to: number; unit: Unit }
+): Quantity {
+	const above = (x: number) => fit.quantityAt([x]).value - y.value;
+	const rising = above(to) > above(from);
+	if (!(above(from) * above(to) <= 0)) {
+		throw new FitProblem('not-finite', 'The curve does not reach that value between these ends.');
+	}
+	let [low, high] = [from, to];
+	for (let round = 0; round < mostHalvings; round += 1) {
+		const middle = low + (high - low) / 2;
+		if (middle === low || middle === high) break;
+		if (above(middle) > 0 === rising) high = middle;
+		else low = middle;
+	}
+	const x = Math.abs(above(low)) < Math.abs(above(high)) ? low : high;
+	// cube root of the rounding unit: where a central difference loses least
+	const step = 6e-6 * (to - from);
+	const slope = (above(x + step) - above(x - step)) / (2 * step);
+	if (!(slope !== 0) || !Number.isFinite(slope)) {
+		throw new FitProblem('not-finite', 'The curve lies level there, so that no x can be told.');
+	}
+	return propagate(x, unit.dimension, [[y, 1 / slope], [fit.quantityAt([x]), -1 / slope]], unit); // prettier-ignore
 }

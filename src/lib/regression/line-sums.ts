@@ -1,7 +1,7 @@
 import { compensatedSum } from '$lib/statistics';
 import type { Quantity } from '$lib/quantities';
 import { FitProblem } from './problems';
-import { readingVariance, statedWeights } from './stated';
+import { readingVariance, statedWeights, statesOwn } from './stated';
 
 /** The sums of a weighted straight line about its centre; through the origin the centre is the origin itself. */
 export interface Sums {
@@ -70,11 +70,13 @@ export function weightedLine(
 	through: Through
 ): Sums {
 	let sums = start;
+	const uncertainX = x.some(statesOwn);
 	for (let round = 0; round < 50; round += 1) {
 		const next = leastSquares(xs, ys, statedWeights(readingVariances(x, y, sums.slope)), through);
 		const settled = Math.abs(next.slope - sums.slope) <= 1e-14 * Math.abs(next.slope);
 		sums = next;
-		if (settled) break;
+		// with x exact the weights are those of y, whatever the slope
+		if (settled || !uncertainX) break;
 	}
 	return sums;
 }

@@ -11,7 +11,7 @@ import {
 } from '$lib/quantities';
 import { compensatedSum } from '$lib/statistics';
 import { leastSquares, noSpread, readingVariances, weightedLine, type Sums, type Through } from './line-sums';
-import type { FitOptions, FitPolicy } from './model-fit';
+import type { FitOptions, FitPolicy } from './fit-types';
 import { FitProblem } from './problems';
 import { chiSquaredOf } from './stated';
 

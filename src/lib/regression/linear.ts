@@ -1,7 +1,8 @@
 import { divideUnits, type Quantity } from '$lib/quantities';
 import type { Wide } from './double-double';
 import { solveLeastSquares, type Solution } from './least-squares';
-import { modelFit, type FitOptions, type InputSlope, type ModelFit } from './model-fit';
+import type { FitOptions, InputSlope, ModelFit } from './fit-types';
+import { modelFit } from './model-fit';
 import { FitProblem, requirePoints } from './problems';
 import { readingVariance, statedWeights } from './stated';
 

@@ -1,7 +1,7 @@
 import type { Quantity } from '$lib/quantities';
 import { constant, variable, type Dual } from './dual';
 import type { Objective } from './descent';
-import type { InputSlope } from './model-fit';
+import type { InputSlope } from './fit-types';
 
 /** A model in SI numbers: written in dual numbers, so that its derivatives are exact. */
 export type Model = (parameters: readonly Dual[], inputs: readonly Dual[]) => Dual;

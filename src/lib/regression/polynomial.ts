@@ -2,7 +2,8 @@ import { divideUnits, intervalUnit, type Quantity, type Unit } from '$lib/quanti
 import { WideSum, wide, type Wide } from './double-double';
 import { powerOfTwoAbove } from './least-squares';
 import { solveWeighted, unitOf } from './linear';
-import { modelFit, type FitOptions, type InputSlope, type ModelFit } from './model-fit';
+import type { FitOptions, InputSlope, ModelFit } from './fit-types';
+import { modelFit } from './model-fit';
 import { FitProblem, requirePoints } from './problems';
 
 /**

@@ -6,7 +6,7 @@ import { FitProblem } from './problems';
  * each (effective variance). An input that shares a source with y takes part with its sign.
  */
 export function readingVariance(y: Quantity, inputs: readonly (readonly [Quantity, number])[]): number {
-	if (!inputs.some(([input]) => hasOwn(input))) return ownVariance(y);
+	if (!inputs.some(([input]) => statesOwn(input))) return ownVariance(y);
 	const parts = new Map<Source, number>();
 	for (const [source, part] of y.parts)
 		if (source.component.scope === 'reading') addPart(parts, source, part);
@@ -20,7 +20,8 @@ export function readingVariance(y: Quantity, inputs: readonly (readonly [Quantit
 	return size;
 }
 
-function hasOwn({ parts }: Quantity): boolean {
+/** Whether a quantity has reading-scope parts. */
+export function statesOwn({ parts }: Quantity): boolean {
 	for (const { component } of parts.keys()) if (component.scope === 'reading') return true;
 	return false;
 }

@@ -53,17 +53,22 @@ const comparisons: Readonly<Record<string, Comparing>> = {
  */
 export function parseFormula(text: string, scope: FormulaScope): Formula {
 	if (text.length > longest) throw new FormulaProblem(`A formula has at most ${longest} characters.`);
-	let formula: Formula;
+	let node: MathNode;
 	try {
-		formula = convert(parse(text), { scope, over: null });
+		node = parse(text);
 	} catch (cause) {
-		if (!(cause instanceof SyntaxError || cause instanceof RangeError)) throw cause;
 		// the library's own problems, and a nesting so deep that no computer follows it
-		const words = cause instanceof RangeError ? 'it is nested too deeply' : cause.message;
+		const words = cause instanceof RangeError ? 'it is nested too deeply' : messageOf(cause);
 		throw new FormulaProblem(`"${shortened(text)}" is not a formula: ${words}`);
 	}
-	if (sizeOf(formula) > largest) throw new FormulaProblem('The formula is too long. Divide it into steps.');
-	return formula;
+	try {
+		const formula = convert(node, { scope, over: null });
+		if (sizeOf(formula) <= largest) return formula;
+	} catch (cause) {
+		// the library follows some nestings that nothing after it does
+		if (!(cause instanceof RangeError)) throw cause;
+	}
+	throw new FormulaProblem('The formula is too long. Divide it into steps.');
 }
 
 /** A formula that has to be a value. */
@@ -82,6 +87,10 @@ export function parseCondition(text: string, scope: FormulaScope): Formula {
 		throw new FormulaProblem(`"${shortened(text)}" is no condition. Compare with ==, <, > and the like.`);
 	}
 	return formula;
+}
+
+function messageOf(cause: unknown): string {
+	return cause instanceof Error ? cause.message : String(cause);
 }
 
 function shortened(text: string): string {
@@ -122,7 +131,7 @@ function convert(node: MathNode, place: Place): Formula {
 		case 'SymbolNode':
 			return convertName(plain.name ?? '', place);
 		case 'OperatorNode':
-			return convertOperator(plain, shortened(node.toString()), inner);
+			return convertOperator(plain, () => shortened(node.toString()), inner);
 		case 'FunctionNode':
 			return convertCall(plain, place);
 		case 'RelationalNode':
@@ -134,7 +143,7 @@ function convert(node: MathNode, place: Place): Formula {
 
 function convertOperator(
 	plain: PlainNode,
-	text: string,
+	text: () => string,
 	inner: (part: MathNode | undefined) => Formula
 ): Formula {
 	const [left, right] = plain.args ?? [];
@@ -149,7 +158,7 @@ function convertOperator(
 	const how = Object.hasOwn(comparisons, fn) ? comparisons[fn] : undefined;
 	if (how) return compare(how, inner(left), inner(right), text);
 	if (!Object.hasOwn(operators, fn)) {
-		throw new FormulaProblem(`"${text}" uses something other than + - * / ^ and comparisons.`);
+		throw new FormulaProblem(`"${text()}" uses something other than + - * / ^ and comparisons.`);
 	}
 	return { op: operators[fn as keyof typeof operators], left: value(left), right: value(right) };
 }
@@ -158,20 +167,20 @@ function isText(formula: Formula): boolean {
 	return formula.op === 'text' || formula.op === 'cell' || formula.op === 'choice';
 }
 
-function compare(how: Comparing, left: Formula, right: Formula, text: string): Formula {
-	if (isText(left) !== isText(right)) throw new FormulaProblem(`"${text}" compares a text with a number.`);
+function compare(how: Comparing, left: Formula, right: Formula, text: () => string): Formula {
+	if (isText(left) !== isText(right)) throw new FormulaProblem(`"${text()}" compares a text with a number.`);
 	if (isText(left) && how !== '==' && how !== '!=') {
-		throw new FormulaProblem(`"${text}": texts are equal (==) or not (!=).`);
+		throw new FormulaProblem(`"${text()}": texts are equal (==) or not (!=).`);
 	}
-	if (isCondition(left) || isCondition(right)) throw new FormulaProblem(`"${text}" compares conditions.`);
+	if (isCondition(left) || isCondition(right)) throw new FormulaProblem(`"${text()}" compares conditions.`);
 	return { op: 'compare', how, left, right };
 }
 
-function wanted(formula: Formula, condition: boolean, text: string): Formula {
-	if (isText(formula)) throw new FormulaProblem(`"${text}": a text can only be compared.`);
+function wanted(formula: Formula, condition: boolean, text: () => string): Formula {
+	if (isText(formula)) throw new FormulaProblem(`"${text()}": a text can only be compared.`);
 	if (isCondition(formula) === condition) return formula;
 	throw new FormulaProblem(
-		condition ? `"${text}" joins conditions only.` : `"${text}" computes with a condition.`
+		condition ? `"${text()}" joins conditions only.` : `"${text()}" computes with a condition.`
 	);
 }
 
@@ -198,7 +207,7 @@ function tableOfColumn(name: string, scope: FormulaScope): string | null {
 function convertCall(node: PlainNode, place: Place): Formula {
 	const name = node.name ?? (node.fn as { name?: string } | undefined)?.name ?? '';
 	const args = node.args ?? [];
-	const value = (part: MathNode) => wanted(convert(part, place), false, name);
+	const value = (part: MathNode) => wanted(convert(part, place), false, () => name);
 	if (name === 'if') return convertIf(args, place);
 	if (name === 'given') return convertGiven(args, place);
 	const ofColumns = Object.hasOwn(columnFunctions, name) ? columnFunctions[name] : undefined;
@@ -230,10 +239,10 @@ function convertCall(node: PlainNode, place: Place): Formula {
 		function: name,
 		table,
 		arguments: [
-			...args.slice(0, columns).map((part) => wanted(convert(part, inside), false, name)),
+			...args.slice(0, columns).map((part) => wanted(convert(part, inside), false, () => name)),
 			...args.slice(columns, columns + places).map(value)
 		],
-		where: last ? wanted(convert(last, inside), true, name) : null
+		where: last ? wanted(convert(last, inside), true, () => name) : null
 	};
 }
 
@@ -244,9 +253,9 @@ function convertIf(args: MathNode[], place: Place): Formula {
 	}
 	return {
 		op: 'if',
-		condition: wanted(condition, true, 'if'),
-		yes: wanted(yes, false, 'if'),
-		no: wanted(no, false, 'if')
+		condition: wanted(condition, true, () => 'if'),
+		yes: wanted(yes, false, () => 'if'),
+		no: wanted(no, false, () => 'if')
 	};
 }
 

@@ -35,7 +35,7 @@ const matrices = fc
 	);
 
 describe('correlated inputs', () => {
-	it('reproduce any covariance matrix, singular ones too', () => {
+	it('reproduce any covariance matrix, singular ones too', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(matrices, (matrix) => {
 				const quantities = correlated(matrix.map((_, i) => plainNumber(i + 1)), matrix, component); // prettier-ignore
@@ -51,7 +51,7 @@ describe('correlated inputs', () => {
 		);
 	});
 
-	it('do not depend on the order of the quantities', () => {
+	it('do not depend on the order of the quantities', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(matrices, (matrix) => {
 				const zeros = matrix.map(() => plainNumber(0));

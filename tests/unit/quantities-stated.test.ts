@@ -211,7 +211,7 @@ describe('what is shown reads back', () => {
 		}
 	);
 
-	it('is read the same in a cell and in a text', () => {
+	it('is read the same in a cell and in a text', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(values, sizes, (value, u) => {
 				const { text } = formatQuantity(value, u, parseUnit('1'));
@@ -225,7 +225,7 @@ describe('what is shown reads back', () => {
 		);
 	});
 
-	it('a plain decimal is read as it stands, by the short way and the long', () => {
+	it('a plain decimal is read as it stands, by the short way and the long', { timeout: 60_000 }, () => {
 		const decimals = fc.tuple(fc.integer({ min: -99999, max: 99999 }), fc.integer({ min: 0, max: 9 }));
 		fc.assert(
 			fc.property(decimals, ([digits, places]) => {

@@ -42,7 +42,7 @@ function near(a: Unit, b: Unit): void {
 }
 
 describe('any unit', () => {
-	it('reads back from its own text', () => {
+	it('reads back from its own text', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(units, (unit) => {
 				const back = parseUnit(unitText(unit));
@@ -53,7 +53,7 @@ describe('any unit', () => {
 		);
 	});
 
-	it('is written so that KaTeX takes it, and said in words', () => {
+	it('is written so that KaTeX takes it, and said in words', { timeout: 60_000 }, () => {
 		// KaTeX has no upright µ: it sets the one of the page's own font, and says so in the console each time
 		const set = units.filter((unit) => unit.factors.every(({ prefix }) => prefix !== 'u'));
 		fc.assert(
@@ -72,7 +72,7 @@ describe('any unit', () => {
 		);
 	});
 
-	it('commutes, and a division undoes a multiplication', () => {
+	it('commutes, and a division undoes a multiplication', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(units, units, (a, b) => {
 				near(multiplyUnits(a, b), multiplyUnits(b, a));
@@ -89,7 +89,7 @@ describe('any calculation', () => {
 	const sizes = fc.double({ min: 0.1, max: 900, noNaN: true });
 	const input = { component: { id: 'a', label: 'a', scope: 'reading', degreesOfFreedom: Infinity } } as const;
 
-	it('gives the same in whatever units its inputs are told', () => {
+	it('gives the same in whatever units its inputs are told', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(kinds, sizes, sizes, fc.nat(), fc.nat(), (names, x, y, i, j) => {
 				const unit = (k: number) => parseUnit(names[k % names.length] ?? '1');
@@ -108,7 +108,7 @@ describe('any calculation', () => {
 		);
 	});
 
-	it('tells a value back in the unit that it was typed in', () => {
+	it('tells a value back in the unit that it was typed in', { timeout: 60_000 }, () => {
 		fc.assert(
 			fc.property(units, sizes, (unit, value) => {
 				expect(valueIn(exactly(value, unit)) / value).toBeCloseTo(1, 14);
@@ -117,18 +117,22 @@ describe('any calculation', () => {
 		);
 	});
 
-	it('leaves nothing of a difference with itself, along whatever way it was computed', () => {
-		fc.assert(
-			fc.property(sizes, sizes, (x, y) => {
-				const a = withDeviations(plainNumber(x), [[input, 0.1]]);
-				const b = plainNumber(y);
-				const one = multiply(add(a, b), b);
-				expect(subtract(one, one)).toMatchObject({ value: 0 });
-				expect(subtract(one, one).parts.size).toBe(0);
-				const way = add(multiply(a, b), multiply(b, b));
-				expect(standardUncertainty(subtract(one, way))).toBeLessThan(1e-14 * y);
-			}),
-			{ seed }
-		);
-	});
+	it(
+		'leaves nothing of a difference with itself, along whatever way it was computed',
+		{ timeout: 60_000 },
+		() => {
+			fc.assert(
+				fc.property(sizes, sizes, (x, y) => {
+					const a = withDeviations(plainNumber(x), [[input, 0.1]]);
+					const b = plainNumber(y);
+					const one = multiply(add(a, b), b);
+					expect(subtract(one, one)).toMatchObject({ value: 0 });
+					expect(subtract(one, one).parts.size).toBe(0);
+					const way = add(multiply(a, b), multiply(b, b));
+					expect(standardUncertainty(subtract(one, way))).toBeLessThan(1e-14 * y);
+				}),
+				{ seed }
+			);
+		}
+	);
 });

@@ -7,7 +7,14 @@ const alias = { $lib: new URL('./src/lib', import.meta.url).pathname };
 
 export default defineConfig({
 	plugins: [tailwindcss(), sveltekit(), liveSocket()],
-	build: { sourcemap: false },
+	build: {
+		sourcemap: false,
+		// Modules of the special functions only define; none says so itself, and without this a page that wants a mean
+		// would carry all distributions (half a megabyte).
+		rolldownOptions: {
+			treeshake: { moduleSideEffects: [{ test: /[\\/]@stdlib[\\/]/, sideEffects: false }] }
+		}
+	},
 	test: {
 		projects: [
 			{

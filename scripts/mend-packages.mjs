@@ -10,6 +10,8 @@ const packages = [
 	{
 		// The driver defers small writes; when the connection is gone by then, the deferred write finds no socket, and the
 		// connection's next life begins with stale bytes and a timer that never fires (its issues 1154 and 1208, open at 3.4.9).
+		// A new connection asks for the array types by a query of its own that nobody awaits; when the connection is lost in
+		// that moment, whoever waits for the connection is told all the same.
 		file: 'postgres/src/connection.js',
 		mends: [
 			{
@@ -23,6 +25,10 @@ const packages = [
 			{
 				from: "    clearImmediate(nextWriteTimer)\n    socket.removeListener('data', data)\n    socket.removeListener('connect', connected)\n    idleTimer",
 				to: `    clearImmediate(nextWriteTimer)\n    ${forget}\n    socket.removeListener('data', data)\n    socket.removeListener('connect', connected)\n    idleTimer`
+			},
+			{
+				from: '        return fetchArrayTypes()\n',
+				to: '        return fetchArrayTypes().catch(() => undefined)\n'
 			}
 		]
 	},

@@ -13,7 +13,7 @@ export interface AppendQueueOptions {
 	delay?(attempt: number): number;
 }
 
-const defaultDelay = (attempt: number) => Math.min(5_000, 100 * 2 ** attempt);
+const defaultDelay = (attempt: number) => Math.min(1_000, 100 * 2 ** attempt);
 
 /**
  * Edits of one document on their way into the log: in order, one append in flight, tried again until it is committed or refused.

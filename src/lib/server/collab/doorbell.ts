@@ -1,6 +1,7 @@
 import { randomUUID } from 'node:crypto';
 import { Redis } from 'ioredis';
 import postgres from 'postgres';
+import { reconnectAfter } from '../db';
 import { logger } from '../logger';
 
 /** What processes tell each other about live documents. None of it is needed for correctness: the log is the truth, and a sweep hears what got lost. */
@@ -45,6 +46,7 @@ export async function openDoorbell(
 	const me = randomUUID();
 	const sql = postgres(databaseUrl, {
 		max: 1,
+		backoff: reconnectAfter,
 		onnotice: () => undefined,
 		connection: { application_name: 'meniscus doorbell' }
 	});

@@ -3,6 +3,7 @@ export {
 	connect,
 	connection,
 	database,
+	reconnectAfter,
 	type Connection,
 	type Database,
 	type Transaction

@@ -1,4 +1,5 @@
 import { Logger, run, type Runner, type TaskList } from 'graphile-worker';
+import { Pool } from 'pg';
 import { env } from '../env';
 import { logger } from '../logger';
 
@@ -24,6 +25,19 @@ export interface Jobs {
 }
 
 /**
+ * The runner's connections. Its own pool goes without listeners before it goes, and a connection lost in between would end
+ * the process; ours listens as long as it lives, whatever becomes of the runner.
+ */
+function openPool(): Pool {
+	const pool = new Pool({ connectionString: env().DATABASE_URL, max: concurrency + 2 });
+	const lost = (thrown: Error) => log.warn({ err: thrown.message }, 'a connection of the queue was lost');
+	// Between queries the pool tells of it, during one the connection.
+	pool.on('error', lost);
+	pool.on('connect', (client) => client.on('error', lost));
+	return pool;
+}
+
+/**
  * Works through the queue in this process until stopped. Any number of processes may do so. The queue's tables must be
  * there: the migrations make them. A runner that gives up because the database was lost is followed by another one:
  * the process goes on serving meanwhile. What it was at stays locked: {@link freeAbandoned}.
@@ -34,15 +48,15 @@ export async function start(tasks: Tasks, everyMinute: string[] = []): Promise<J
 	const taskList: TaskList = Object.fromEntries(
 		Object.entries(tasks).map(([name, task]) => [name, (payload: unknown) => task(payload)])
 	);
+	const pgPool = openPool();
 	let stopped = false;
 	let runner: Runner | null = null;
 	let tries = 0;
 	const begin = async () => {
 		const begun = await run({
-			connectionString: env().DATABASE_URL,
+			pgPool,
 			taskList,
 			concurrency,
-			maxPoolSize: concurrency + 2,
 			noHandleSignals: true,
 			logger: quiet,
 			crontab: everyMinute.map((name) => `* * * * * ${name} ?max=3`).join('\n')
@@ -62,11 +76,20 @@ export async function start(tasks: Tasks, everyMinute: string[] = []): Promise<J
 			if (!stopped) begin().catch(again);
 		}, pause).unref();
 	};
-	await begin();
+	try {
+		await begin();
+	} catch (thrown) {
+		await pgPool.end();
+		throw thrown;
+	}
 	return {
 		async stop() {
 			stopped = true;
-			await runner?.stop();
+			try {
+				await runner?.stop();
+			} finally {
+				await pgPool.end();
+			}
 		}
 	};
 }

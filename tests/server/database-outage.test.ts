@@ -1,7 +1,8 @@
 import { fork, type ChildProcess } from 'node:child_process';
+import { connect as connectTo, createServer, type AddressInfo } from 'node:net';
 import postgres from 'postgres';
 import { afterAll, beforeAll, expect, it } from 'vitest';
-import { closeDatabase, database } from '../../src/lib/server/db';
+import { closeDatabase, connect, database } from '../../src/lib/server/db';
 import * as jobs from '../../src/lib/server/jobs';
 import { freshDatabase, throwAwayCluster, type FreshDatabase, type ThrowAwayCluster } from '../harness';
 import { killCluster } from '../kill-cluster';
@@ -53,8 +54,8 @@ async function until(what: string, so: () => boolean | Promise<boolean>): Promis
 	const end = Date.now() + patience;
 	while (!(await so())) {
 		if (child.exitCode !== null)
-			throw new Error(`The process ended (${child.exitCode}):\n${output.slice(-2_000)}`);
-		if (Date.now() > end) throw new Error(`not ${what} within ${patience} ms:\n${output.slice(-2_000)}`);
+			throw new Error(`The process ended (${child.exitCode}):\n${output.slice(-9_000)}`);
+		if (Date.now() > end) throw new Error(`not ${what} within ${patience} ms:\n${output.slice(-9_000)}`);
 		await new Promise((resolve) => setTimeout(resolve, 20));
 	}
 }
@@ -107,3 +108,49 @@ it(
 		expect(output).toContain('it is taken up again');
 	}
 );
+
+it('answers from its pool as soon as the database is back, however often it was asked meanwhile', async () => {
+	const ask = () => database().execute('select 1');
+	await Promise.all(Array.from({ length: 20 }, ask));
+	await killCluster(cluster.pid);
+	for (const end = Date.now() + 2_000; Date.now() < end;) {
+		const answers = await Promise.allSettled(Array.from({ length: 20 }, ask));
+		expect(answers.every(({ status }) => status === 'rejected')).toBe(true);
+	}
+	await cluster.restart();
+	const back = Date.now();
+	await until('answered', () => Promise.all(Array.from({ length: 10 }, ask)).then(Boolean, () => false));
+	expect(Date.now() - back).toBeLessThan(5_000);
+});
+
+it('tells only whoever asked when a connection is lost while it is being set up', async () => {
+	const unowned: unknown[] = [];
+	const note = (thrown: unknown) => void unowned.push(thrown);
+	process.on('unhandledRejection', note);
+	// Between driver and database; cuts the line at the driver's own first query, and lets the second try through.
+	let cuts = 1;
+	const between = createServer((fromDriver) => {
+		const toDatabase = connectTo(cluster.port, '127.0.0.1');
+		fromDriver.on('error', () => toDatabase.destroy()).on('close', () => toDatabase.destroy());
+		toDatabase.on('error', () => fromDriver.destroy()).on('close', () => fromDriver.destroy());
+		toDatabase.pipe(fromDriver);
+		fromDriver.on('data', (chunk: Buffer) => {
+			if (chunk.includes('pg_catalog.pg_type') && cuts-- > 0) fromDriver.resetAndDestroy();
+			else toDatabase.write(chunk);
+		});
+	});
+	await new Promise<void>((resolve) => between.listen(0, '127.0.0.1', resolve));
+	const url = new URL(fresh.url);
+	url.port = String((between.address() as AddressInfo).port);
+	const { sql, close } = connect(url.href, 1);
+	try {
+		await expect(sql`select 1 as one`).rejects.toThrow();
+		expect([...(await sql`select array['a', 'b'] as list`)]).toEqual([{ list: ['a', 'b'] }]);
+		await new Promise((resolve) => setTimeout(resolve, 50));
+		expect(unowned).toEqual([]);
+	} finally {
+		await close();
+		between.close();
+		process.off('unhandledRejection', note);
+	}
+});

@@ -1,7 +1,7 @@
 import { fork } from 'node:child_process';
 import { join } from 'node:path';
 import { ensureBuild } from '../scripts/start/build.mjs';
-import { freePort } from '../scripts/start/ports.mjs';
+import { lastingPort, untilFree } from '../scripts/start/ports.mjs';
 
 const root = new URL('..', import.meta.url).pathname;
 
@@ -36,7 +36,7 @@ export async function builtApplication(): Promise<string> {
 /** Runs the built application as a process of its own on a free port; resolves when it listens. */
 export async function startServer(options: ServerOptions): Promise<RunningServer> {
 	const build = process.env['MENISCUS_BUILD'] ?? (await builtApplication());
-	const port = await freePort(options.port);
+	const port = await (options.port === undefined ? lastingPort() : untilFree(options.port));
 	const origin = `http://127.0.0.1:${port}`;
 	let output = '';
 	const child = fork(join(root, 'scripts/serve.mjs'), [], {

@@ -1,3 +1,4 @@
+import { randomInt } from 'node:crypto';
 import { createServer } from 'node:net';
 
 /**
@@ -43,4 +44,32 @@ export async function nextFreePort(first, host) {
 	for (let port = first; port < Math.min(first + 200, 65_536); port++)
 		if (await isFree(port, host)) return port;
 	return freePort(undefined, host);
+}
+
+/** The system takes ports of outgoing connections from 32768 (Linux) or 49152 (others) upwards. */
+const lasting = { from: 15_000, below: 32_768 };
+
+/**
+ * A free port for what goes away and comes back under the same number: one that no outgoing connection can take meanwhile.
+ * @returns {Promise<number>}
+ */
+export async function lastingPort() {
+	for (let tries = 0; tries < 50; tries++) {
+		const port = randomInt(lasting.from, lasting.below);
+		if (await isFree(port)) return port;
+	}
+	return freePort();
+}
+
+/**
+ * Waits until a port is free again. Errors: after `patience` milliseconds.
+ * @param {number} port
+ * @returns {Promise<number>} the port
+ */
+export async function untilFree(port, patience = 10_000) {
+	for (const end = Date.now() + patience; !(await isFree(port));) {
+		if (Date.now() > end) throw new Error(`port ${port} is taken`);
+		await new Promise((resolve) => setTimeout(resolve, 20));
+	}
+	return port;
 }

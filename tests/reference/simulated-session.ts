@@ -117,13 +117,13 @@ export function exampleText(slug: string, name: string): string {
 }
 
 /**
- * Sessions drawn for a coverage test: 10 000, or what MENISCUS_COVERAGE_DRAWS says, but no longer than a minute unless
+ * Sessions drawn for a coverage test: 10 000, or what MENISCUS_COVERAGE_DRAWS says, but no longer than half a minute unless
  * that variable asks for a number. The seeds are 1, 2, 3 and so on: fixed before anybody looked.
  */
 export function draws(one: (seed: number) => void): number {
 	const asked = process.env['MENISCUS_COVERAGE_DRAWS'];
 	const wanted = asked ? Number(asked) : 10_000;
-	const end = Date.now() + 60_000;
+	const end = Date.now() + 30_000;
 	let drawn = 0;
 	while (drawn < wanted && (asked || Date.now() < end)) one((drawn += 1));
 	return drawn;

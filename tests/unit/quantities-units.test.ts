@@ -3,7 +3,10 @@ import { describe, expect, it } from 'vitest';
 import {
 	coherentUnit,
 	divideUnits,
+	exactly,
 	parseUnit,
+	plainNumber,
+	power,
 	QuantityProblem,
 	unitHtml,
 	unitOne,
@@ -198,6 +201,14 @@ describe('units', () => {
 		for (const text of ['kJ/mol', 'J/(mol K)', '1/K', 'm3', 'degC', '%', 'mol/(L min)', 'µm']) {
 			expect(parseUnit(unitText(parseUnit(text)))).toEqual(parseUnit(text));
 		}
+	});
+
+	it('takes powers of any size in no time, and refuses those beyond all numbers', () => {
+		expect(parseUnit('m^99999999').factor).toBe(1);
+		expect(() => parseUnit('km^99999999')).toThrow(/beyond all numbers/);
+		expect(() => power(exactly(2, parseUnit('cm')), plainNumber(1e9))).toThrow(QuantityProblem);
+		expect(parseUnit('m⁻⁵ s⁶')).toEqual(parseUnit('m^-5 s^6'));
+		expect(parseUnit('cm^20').factor / 1e-40).toBeCloseTo(1, 13);
 	});
 
 	it('finds a coherent unit for any dimension', () => {

@@ -14,19 +14,15 @@ export {
 	compatibleUnits,
 	divideUnits,
 	intervalUnit,
-	isUnitSymbol,
 	multiplyUnits,
 	parseUnit,
 	unitOne,
 	type Unit
 } from './units';
+export { isUnitSymbol } from './unit-reader';
 export { escapeHtml, unitHtml, unitSpeech, unitTex, unitText } from './unit-text';
 export {
 	addPart,
-	budget,
-	combinedUncertainty,
-	combineVariances,
-	componentVariances,
 	correlation,
 	covariance,
 	differenceIn,
@@ -40,14 +36,20 @@ export {
 	valueIn,
 	variance,
 	withDeviations,
-	type BudgetEntry,
 	type Component,
 	type LinearParts,
 	type Quantity,
 	type Scope,
-	type Source,
-	type Uncertainty
+	type Source
 } from './quantity';
+export {
+	budget,
+	combinedUncertainty,
+	combineVariances,
+	componentVariances,
+	type BudgetEntry,
+	type Uncertainty
+} from './uncertainty';
 export {
 	absolute,
 	add,

@@ -1,5 +1,6 @@
 import { prefixFactors } from './unit-table';
-import { entryOf, type Unit, type UnitFactor } from './units';
+import { entryOf, type UnitFactor } from './unit-reader';
+import type { Unit } from './units';
 
 const thinSpace = '\u2009';
 const minus = '\u2212';

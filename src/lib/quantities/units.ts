@@ -7,16 +7,8 @@ import {
 } from './dimension';
 import { pow } from './elementary';
 import { QuantityProblem } from './problems';
-import { prefixFactors, unitAliases, unitTable, type UnitEntry } from './unit-table';
-
-export interface UnitFactor {
-	/** with its prefix, as written: 'kJ' */
-	symbol: string;
-	prefix: string;
-	/** key of the unit table: 'J' */
-	base: string;
-	exponent: number;
-}
+import { entryOf, UnitReader, type UnitFactor } from './unit-reader';
+import { prefixFactors } from './unit-table';
 
 /** SI value = value * factor + offset. The offset is zero but for a scale of temperature standing alone. */
 export interface Unit {
@@ -28,16 +20,8 @@ export interface Unit {
 
 export const unitOne: Unit = { factors: [], factor: 1, offset: 0, dimension: dimensionless };
 
-const superscripts: Readonly<Record<string, string>> = {
-	'⁻': '-',
-	'¹': '1',
-	'²': '2',
-	'³': '3',
-	'⁴': '4',
-	'⁰': '0'
-};
-
 const cache = new Map<string, Unit>();
+const mostRemembered = 2000;
 
 /**
  * Reads 'kJ/mol', 'J/(mol K)', 'J mol-1 K-1', 'J mol^-1 K^-1', '1/K', '°C', '%', '1' and ''.
@@ -47,29 +31,10 @@ export function parseUnit(text: string): Unit {
 	const known = cache.get(text);
 	if (known) return known;
 	const unit = composeUnit(new UnitReader(text).read());
+	// whoever types thousands of units on purpose fills no memory with them
+	if (cache.size >= mostRemembered) cache.clear();
 	cache.set(text, unit);
 	return unit;
-}
-
-/** Whether a single symbol, prefix allowed, is in the table. */
-export function isUnitSymbol(symbol: string): boolean {
-	return findSymbol(symbol) !== null;
-}
-
-function findSymbol(typed: string): { symbol: string; prefix: string; base: string } | null {
-	const alias = Object.hasOwn(unitAliases, typed) ? unitAliases[typed] : undefined;
-	const symbol = alias ?? typed.replace(/^[µμ]/u, 'u');
-	if (Object.hasOwn(unitTable, symbol)) return { symbol, prefix: '', base: symbol };
-	const prefix = symbol.charAt(0);
-	const base = symbol.slice(1);
-	if (!Object.hasOwn(prefixFactors, prefix) || !Object.hasOwn(unitTable, base)) return null;
-	return entryOf(base).prefixes?.includes(prefix) ? { symbol, prefix, base } : null;
-}
-
-export function entryOf(base: string): UnitEntry {
-	const entry = Object.hasOwn(unitTable, base) ? unitTable[base] : undefined;
-	if (!entry) throw new QuantityProblem('unknown-unit', `"${base}" is not a unit known here.`);
-	return entry;
 }
 
 /** Puts factors together; equal symbols are merged and those that cancel disappear. */
@@ -96,10 +61,15 @@ export function composeUnit(factors: readonly UnitFactor[]): Unit {
 	}
 	const alone = kept.length === 1 && kept[0]?.exponent === 1 ? kept[0] : undefined;
 	const offset = alone ? (entryOf(alone.base).offset ?? 0) : 0;
-	return { factors: kept, factor: numerator / denominator, offset, dimension };
+	const factor = numerator / denominator;
+	if (!(factor > 0 && factor < Infinity)) {
+		throw new QuantityProblem('not-finite', 'A unit to such a power is beyond all numbers.');
+	}
+	return { factors: kept, factor, offset, dimension };
 }
 
 function raised(size: number, exponent: number): number {
+	if (exponent > 16) return pow(size, exponent);
 	let product = 1;
 	const whole = Math.floor(exponent);
 	for (let i = 0; i < whole; i += 1) product *= size;
@@ -124,13 +94,15 @@ const powers = new WeakMap<Unit, Map<number, Unit>>();
 
 /** The unit of a power; `dimension` is the power's, for which a coherent unit stands in where exponents grow unwieldy. */
 export function raiseUnit(unit: Unit, exponent: number, dimension: Dimension): Unit {
-	const known = powers.get(unit)?.get(exponent);
-	if (known) return known;
+	const before = powers.get(unit)?.get(exponent);
+	if (before) return before;
 	const factors = unit.factors.map((factor) => ({ ...factor, exponent: factor.exponent * exponent }));
 	// halves are written as they are, m^0.5; a third would be an endless decimal
 	const tidy = factors.every((factor) => Number.isInteger(2 * factor.exponent));
 	const result = tidy ? composeUnit(factors.map(asInterval)) : coherentUnit(dimension);
-	powers.set(unit, (powers.get(unit) ?? new Map<number, Unit>()).set(exponent, result));
+	const known = powers.get(unit);
+	if (known && known.size < mostRemembered) known.set(exponent, result);
+	else powers.set(unit, new Map([[exponent, result]]));
 	return result;
 }
 
@@ -177,77 +149,4 @@ export function coherentUnit(dimension: Dimension): Unit {
 
 export function compatibleUnits(a: Unit, b: Unit): boolean {
 	return sameDimension(a.dimension, b.dimension);
-}
-
-class UnitReader {
-	private readonly tokens: string[];
-	private at = 0;
-
-	constructor(private readonly text: string) {
-		const plain = text
-			// degrees Celsius with a space inside; an angle times a coulomb is nobody's unit
-			.replace(/(?:°|º|deg)\s+[cC](?![\p{L}\d])/gu, 'degC')
-			.replace(/[⁻¹²³⁴⁰]+/gu, (run) => '^' + [...run].map((sign) => superscripts[sign] ?? '').join(''))
-			.replace(/\u2212/gu, '-')
-			// the sign of the ohm that Unicode keeps beside the Greek letter
-			.replace(/\u2126/gu, '\u03a9')
-			.replace(/[·⋅]/gu, ' ');
-		// a number in a symbol (mmH2O) is no exponent; exponents with a decimal sign want their ^
-		this.tokens = plain.match(/[cm]mH[2₂]O|\^-?\d+\.\d+|\^?-?\d+|[()/*^]|[%°ºµμ℃\p{L}]+|\S/gu) ?? [];
-	}
-
-	read(): UnitFactor[] {
-		if (this.tokens.length === 0) return [];
-		const factors = this.product();
-		if (this.at < this.tokens.length) throw this.problem(`"${this.tokens[this.at] ?? ''}" is out of place`);
-		return factors;
-	}
-
-	private product(): UnitFactor[] {
-		const factors = this.factor();
-		while (this.at < this.tokens.length && this.tokens[this.at] !== ')') {
-			if (this.tokens[this.at] === '/') {
-				this.at += 1;
-				factors.push(...this.factor().map((factor) => ({ ...factor, exponent: -factor.exponent })));
-				const next = this.tokens[this.at];
-				if (next !== undefined && next !== ')') {
-					throw new QuantityProblem(
-						'ambiguous-unit',
-						`"${this.text}" can be read in two ways. Put what is below the line in parentheses, as in J/(mol K).`
-					);
-				}
-				break;
-			}
-			if (this.tokens[this.at] === '*') this.at += 1;
-			factors.push(...this.factor());
-		}
-		return factors;
-	}
-
-	private factor(): UnitFactor[] {
-		const token = this.tokens[this.at];
-		this.at += 1;
-		if (token === '(') {
-			const inside = this.product();
-			if (this.tokens[this.at] !== ')') throw this.problem('a parenthesis is not closed');
-			this.at += 1;
-			return inside;
-		}
-		if (token === undefined) throw this.problem('something is missing at the end');
-		const found = findSymbol(token);
-		if (!found) throw this.problem(`"${token}" is not a unit known here`);
-		const exponent = this.exponent();
-		return [{ ...found, exponent }];
-	}
-
-	private exponent(): number {
-		const token = this.tokens[this.at];
-		if (token === undefined || !/^\^?-?\d+(?:\.\d+)?$/.test(token)) return 1;
-		this.at += 1;
-		return Number(token.replace('^', ''));
-	}
-
-	private problem(what: string): QuantityProblem {
-		return new QuantityProblem('unknown-unit', `The unit "${this.text}" cannot be read: ${what}.`);
-	}
 }

@@ -28,7 +28,7 @@ export const drafts: Record<Rotating, Record<string, string>> = {
 		method:
 			'Acid and glucose solution were mixed in equal volumes and the angle was read 24 times over about three half-lives, then once more after fourteen.\n\n::table[runs]',
 		results:
-			'Every run follows one exponential, as :figure[decay] shows.\n\n::figure[decay]\n\nThe rate constants lie on a line against the concentration of hydrogen ions.\n\n::figure[catalysis]\n\n::workings[k.a]\n\n::comparison[k_0]\n\n::comparison[k_H]',
+			'Every run follows one exponential, as :figure[decay] shows.\n\n::figure[decay]\n\nThe rate constants lie on a line against the concentration of hydrogen ions.\n\n::figure[catalysis]\n\n::workings[K_eq]\n\n::comparison[k_0]\n\n::comparison[k_H]',
 		discussion:
 			'The methods of Guggenheim and of Kezdy and Swinbourne need no final angle and agree with the first-order line within their uncertainty.'
 	}

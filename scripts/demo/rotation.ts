@@ -47,13 +47,14 @@ export async function loadRotation(
 				rubricVersionId,
 				title: worksheet.title,
 				position: e + 2,
-				...dates(weeksOf(0))
+				// the first to have it set the date; an extension never shortens one
+				...dates(1)
 			});
 			await tx.insert(schema.extensions).values(
 				teams.flatMap(({ name }, index) => {
 					const teamId = course.teamIds.get(name);
 					const group = index % rotating.length;
-					if (group === 0 || !teamId) return [];
+					if (weeksOf(group) === 1 || !teamId) return [];
 					const reason = 'Rotation';
 					return [
 						{

@@ -36,9 +36,10 @@ export function describePlot(
 		[...all.flatMap((p) => spans(p.y, p.uy)), ...curves.flatMap(({ low, high }) => [low, high])],
 		{ start: mainFoot, end: margin.top, labelRoom: labelRoom.y }
 	);
+	const barred = residualsWithBars(all);
 	const residual = withResiduals
 		? makeAxis(
-				all.flatMap((p) => (p.residual === null || !p.used ? [] : spans(p.residual, p.uy))),
+				all.flatMap((p) => (p.residual === null || !p.used ? [] : spans(p.residual, barred ? p.uy : null))),
 				{ start: foot, end: foot - panel, labelRoom: labelRoom.residual, symmetric: true }
 			)
 		: null;
@@ -51,8 +52,9 @@ export function describePlot(
 		series.flatMap(({ points }, index) => {
 			const drawn = points.filter(shown);
 			if (close[index]) return dotMarks(drawn, valueOf, x, axis);
-			const ux = (point: LinePlotPoint) => (axis === residual ? null : point.ux);
-			return drawn.flatMap((point) => pointMarks(point, index, valueOf(point), ux(point), x, axis));
+			const barsOf = (point: LinePlotPoint) =>
+				axis === residual ? { ...point, ux: null, uy: barred ? point.uy : null } : point;
+			return drawn.flatMap((point) => pointMarks(barsOf(point), index, valueOf(point), x, axis));
 		});
 	const marks: PlotMark[] = [
 		...series.flatMap(({ curve }) => (curve ? curveMarks(curve, x, y, alone) : [])),
@@ -71,4 +73,11 @@ export function describePlot(
 	marks.push(...upMarks(y, x.start), ...acrossMarks(x, mainFoot, !residual));
 	marks.push(...seriesLabels(series, x, y, { width, top: margin.top, bottom: mainFoot }));
 	return { width, height, x, y, residual, marks };
+}
+
+/** Bars that dwarf the residuals come from what all points share: they say nothing of these, and are left out beside them. */
+function residualsWithBars(points: readonly LinePlotPoint[]): boolean {
+	const fitted = points.filter(({ residual, used }) => residual !== null && used);
+	const largest = fitted.reduce((most, { residual }) => Math.max(most, Math.abs(residual ?? 0)), 0);
+	return fitted.filter(({ uy }) => (uy ?? 0) > 4 * largest).length <= fitted.length / 2;
 }

@@ -43,7 +43,6 @@ export function pointMarks(
 	point: LinePlotPoint,
 	series: number,
 	value: number,
-	ux: number | null,
 	x: Axis,
 	y: Axis
 ): PlotMark[] {
@@ -51,7 +50,7 @@ export function pointMarks(
 	const marks: PlotMark[] = [];
 	const reach = (axis: Axis, u: number | null) =>
 		Math.abs(((u ?? 0) * (axis.end - axis.start)) / (axis.to - axis.from));
-	const [across, up] = [reach(x, ux), reach(y, point.uy)];
+	const [across, up] = [reach(x, point.ux), reach(y, point.uy)];
 	if (across > pointSize / 2)
 		marks.push({ kind: 'line', class: 'error-bar', x1: px - across, y1: py, x2: px + across, y2: py });
 	if (up > pointSize / 2)

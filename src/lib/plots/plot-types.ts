@@ -27,7 +27,14 @@ export interface LinePlotPoint {
 /** What is drawn, in px, in drawing order. `class` says what it is; looks are the style sheet's. */
 export type PlotMark =
 	| { kind: 'path'; class: 'band' | 'band-edge' | 'zero' | 'fit' | 'dots' | 'crosses'; d: string }
-	| { kind: 'line'; class: 'error-bar' | 'axis' | 'tick'; x1: number; y1: number; x2: number; y2: number }
+	| {
+			kind: 'line';
+			class: 'error-bar' | 'axis' | 'tick' | 'leader';
+			x1: number;
+			y1: number;
+			x2: number;
+			y2: number;
+	  }
 	/** series are told apart by shape first; a point left out of the fit is a cross */
 	| { kind: 'point'; class: 'point' | 'left-out'; series: number; row: string; x: number; y: number }
 	/** a series' name beside it, its shape before it */

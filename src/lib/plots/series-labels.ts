@@ -46,14 +46,73 @@ export function seriesLabels(
 		return places.length === 0 ? [] : [{ index, text: nameOf(each.label), places }];
 	});
 	if (standing.length < 2) return [];
-	const taken: Box[] = [];
-	return standing.map((own) => {
+	const ending = standing.filter(({ places }) => (places.at(-1)?.x ?? 0) > x.end - 0.14 * (x.end - x.start));
+	const marks = atTheEnd(ending, x, frame);
+	const taken: Box[] = marks.flatMap((mark) =>
+		mark.kind === 'label' ? [boxOf(mark.x, mark.y, mark.text)] : []
+	);
+	for (const own of standing) {
+		if (ending.includes(own)) continue;
 		const others = standing.filter((other) => other !== own);
 		const box = bestBox(own, others, taken, frame, x.start);
 		taken.push(box);
 		const { index, text } = own;
-		return { kind: 'label', class: 'series-label', series: index, x: box.x, y: box.y + lineHeight / 2, text };
+		marks.push({
+			kind: 'label',
+			class: 'series-label',
+			series: index,
+			x: box.x,
+			y: box.y + lineHeight / 2,
+			text
+		});
+	}
+	return marks;
+}
+
+/** Series that reach the right end have their names there one beneath the other, in the order of their last points. */
+function atTheEnd(ending: readonly Standing[], x: Axis, frame: { top: number; bottom: number }): PlotMark[] {
+	const ends = ending
+		.map((standing) => ({ ...standing, at: standing.places.at(-1) ?? { x: x.end, y: frame.top } }))
+		.sort((a, b) => a.at.y - b.at.y);
+	const heights = spread(
+		ends.map(({ at }) => at.y),
+		lineHeight,
+		frame.top + lineHeight / 2,
+		frame.bottom - lineHeight / 2
+	);
+	return ends.flatMap(({ at, index, text }, i): PlotMark[] => {
+		const y = heights[i] ?? at.y;
+		const label: PlotMark = { kind: 'label', class: 'series-label', series: index, x: x.end + 10, y, text };
+		const from = at.x + 6;
+		const far = Math.abs(y - at.y) > 3 || x.end + 8 - from > 12;
+		return far
+			? [{ kind: 'line', class: 'leader', x1: from, y1: at.y, x2: x.end + 9, y2: y }, label]
+			: [label];
 	});
+}
+
+/** The least moved places that are a line apart and inside the frame: neighbours too close are pooled about their mean. */
+function spread(wanted: readonly number[], apart: number, least: number, most: number): number[] {
+	const pools: { sum: number; count: number }[] = [];
+	wanted.forEach((place, i) => {
+		let pool = { sum: place - i * apart, count: 1 };
+		for (let before = pools.at(-1); before && before.sum / before.count > pool.sum / pool.count;) {
+			pools.pop();
+			pool = { sum: pool.sum + before.sum, count: pool.count + before.count };
+			before = pools.at(-1);
+		}
+		pools.push(pool);
+	});
+	const room = most - (wanted.length - 1) * apart;
+	const starts = pools.flatMap(({ sum, count }) => {
+		const start = Math.max(least, Math.min(room, sum / count));
+		return Array.from({ length: count }, () => start);
+	});
+	return starts.map((start, i) => start + i * apart);
+}
+
+function boxOf(x: number, y: number, text: string): Box {
+	return { x, y: y - lineHeight / 2, width: shapeWidth + text.length * letterWidth, height: lineHeight };
 }
 
 function bestBox(

@@ -58,7 +58,7 @@ function linesByPart({ fits }: Evaluation): [string, ShownQuantity][] {
 }
 
 /**
- * The values as they are offered: what is compared with the literature first, then other results, what was fitted, and at
+ * The values as they are offered: what an abstract gives or the literature knows first, then other results, what was fitted, and at
  * last what was typed or is constant. Each under one name.
  */
 export function offeredValues(evaluation: Evaluation): [string, ShownQuantity][] {
@@ -68,7 +68,11 @@ export function offeredValues(evaluation: Evaluation): [string, ShownQuantity][]
 	const rank = (name: string) => {
 		if (fitted.has(name) || !Object.hasOwn(quantities, name)) return 2;
 		const own = name.split('.')[0] ?? name;
-		return compared.has(own) ? 0 : Object.hasOwn(workings, name) ? 1 : 3;
+		return quantities[name]?.headline === true || compared.has(own)
+			? 0
+			: Object.hasOwn(workings, name)
+				? 1
+				: 3;
 	};
 	return [...linkableValues(evaluation)]
 		.filter(

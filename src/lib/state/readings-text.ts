@@ -74,9 +74,10 @@ export function statusOf(
 	}
 }
 
-/** A worksheet's unit as it is shown: "°C" for "degC". */
+/** A worksheet's unit as it is shown where there is no markup: "°C" for "degC", "kg/m³". */
 export function shownUnit(unit: string): string {
-	return unit === '' ? '' : unitText(parseUnit(unit));
+	if (unit === '') return '';
+	return unitText(parseUnit(unit)).replace(/\^([23])(?!\d)/g, (_, power) => (power === '2' ? '²' : '³'));
 }
 
 /** "0.1 K each reading, 0.2 K shared": the components of a standard uncertainty in few words. */

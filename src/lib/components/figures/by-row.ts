@@ -98,6 +98,15 @@ export function singleValues(evaluation: Evaluation): ShownQuantity[] {
 	);
 }
 
+/** Columns of tables by row whose values are told as results or with fits: tables of readings leave them out. */
+export function toldByRow(evaluation: Evaluation): Set<string> {
+	return new Set(
+		Object.values(evaluation.quantities).flatMap(({ name, group }) =>
+			group === undefined ? [] : [baseOf(name)]
+		)
+	);
+}
+
 export interface FitSet {
 	/** 'line' */
 	name: string;

@@ -1,6 +1,6 @@
 import { v7 as uuidv7 } from 'uuid';
 import { WebSocket } from 'ws';
-import { insertRows, readReadings, sectionText } from '../../src/lib/collab';
+import { insertRows, sectionText } from '../../src/lib/collab';
 import { LiveConnection } from '../../src/lib/state/live-connection';
 
 /** What the outside world was told: nothing enters without a 2xx answer or an answered barrier. */
@@ -38,6 +38,8 @@ export function openLive(
 		changed: () => undefined,
 		local: null,
 		barrierMs: 10,
+		// Sooner than a page: most kills are to find everybody at work again.
+		reconnectMs: { first: 50, longest: 200 },
 		WebSocket: class extends WebSocket {
 			constructor(url: string) {
 				super(url, { headers: { cookie: place.cookie, origin: place.origin } });
@@ -48,6 +50,8 @@ export function openLive(
 }
 
 export interface Actor {
+	/** it gave up by itself; stopping it then throws why */
+	readonly failed: boolean;
 	stop(): Promise<void>;
 }
 
@@ -59,14 +63,19 @@ function writer(live: LiveConnection<string>, type: () => string, ledger: string
 			const burst = [type(), type(), type()];
 			while (running && live.state !== 'stored') await pause(5);
 			if (live.state === 'stored') ledger.push(...burst);
-			await pause(15);
+			await pause(30);
 		}
 	})();
 	return {
+		get failed() {
+			return live.state === 'refused';
+		},
 		async stop() {
 			running = false;
 			await done;
+			const { state } = live;
 			live.destroy();
+			if (state === 'refused') throw new Error(`a writer was turned away: ${live.refusal}`);
 		}
 	};
 }
@@ -83,10 +92,11 @@ export function writeWords(live: LiveConnection<string>, name: string, ledger: L
 }
 
 export function writeRows(live: LiveConnection<string>, ledger: Ledger): Actor {
+	let last: string | undefined;
 	const type = () => {
 		const id = uuidv7();
-		const rows = readReadings(live.doc, ['readings']).tables['readings'] ?? [];
-		insertRows(live.doc, 'readings', [{ id, cells: { t: '91.60', p: '559.6' } }], rows.at(-1)?.id);
+		insertRows(live.doc, 'readings', [{ id, cells: { t: '91.60', p: '559.6' } }], last);
+		last = id;
 		return id;
 	};
 	return writer(live, type, ledger.rows);
@@ -126,6 +136,9 @@ function loop(step: () => Promise<void>, everyMs: number): Actor {
 		failure = problem;
 	});
 	return {
+		get failed() {
+			return failure !== undefined;
+		},
 		async stop() {
 			running = false;
 			await done;
@@ -145,7 +158,7 @@ export function handInAgain(place: Place, report: string, body: unknown, ledger:
 		const { id, sha256 } = answer.json['attempt'] as { id: string; sha256: string };
 		ledger.attempts.push({ id, sha256, key });
 		key = uuidv7();
-	}, 40);
+	}, 80);
 }
 
 /** Sets levels and adds remarks, repeating each until it is answered. */
@@ -193,5 +206,5 @@ export function markAlong(
 			remark = { id: uuidv7(), body: `remark ${turn}` };
 		}
 		turn += 1;
-	}, 15);
+	}, 30);
 }

@@ -153,6 +153,7 @@ export class LiveConnection<Content = unknown> {
 		const generation = ++this.#generation;
 		const current = () => generation === this.#generation && !this.#destroyed;
 		const { documentId, url, WebSocket } = this.#options;
+		const { first, longest } = this.#options.reconnectMs ?? { first: 500, longest: 5_000 };
 		this.#connected = this.#synced = this.#readOnly = false;
 		this.#voidBarriers();
 		this.#edits = this.#confirmed = 0;
@@ -161,9 +162,9 @@ export class LiveConnection<Content = unknown> {
 		const socket = new HocuspocusProviderWebsocket({
 			url,
 			...(WebSocket ? { WebSocketPolyfill: WebSocket } : {}),
-			delay: 500,
-			minDelay: 500,
-			maxDelay: 5_000,
+			delay: first,
+			minDelay: first,
+			maxDelay: longest,
 			messageReconnectTimeout: 40_000
 		});
 		const provider = new HocuspocusProvider({

@@ -48,4 +48,6 @@ export interface LiveConnectionOptions<Content> {
 	WebSocket?: unknown;
 	/** milliseconds from an edit to the question whether it is stored */
 	barrierMs?: number;
+	/** milliseconds before the first and, growing, before later tries to connect again */
+	reconnectMs?: { first: number; longest: number };
 }

@@ -17,7 +17,7 @@ export const emptyWorksheet: Worksheet = {
 	version: 1,
 	summary: '',
 	guide: '',
-	hazards: { notice: '', protection: '', substances: [] },
+	hazards: { notice: '', protection: '', whenItGoesWrong: '', substances: [] },
 	constants: [],
 	parameters: [],
 	tables: [],
@@ -27,7 +27,7 @@ export const emptyWorksheet: Worksheet = {
 	figures: [],
 	requirements: [],
 	outline: [],
-	rubrics: { report: { title: 'None', criteria: [] } },
+	rubrics: { prelab: null, notebook: null, report: { title: 'None', criteria: [] } },
 	order: []
 };
 

@@ -10,6 +10,7 @@ import { compensatedSum } from '$lib/statistics';
 import type { LineFit } from './line';
 import { leastSquares, noSpread } from './line-sums';
 import type { FitOptions } from './fit-types';
+import { square } from './fit-curve';
 import { FitProblem, outOfRange, requirePoints } from './problems';
 import { bothAxesDerivatives, readingSpreads, type Spread, type YorkLine } from './york';
 
@@ -91,7 +92,7 @@ export function fitBothAxes(
 	}
 	const unscaled = {
 		slope: standard.slope,
-		intercept: Math.sqrt(standard.height ** 2 + (centreX * standard.slope) ** 2)
+		intercept: Math.sqrt(1 / total + (centreX * centreX) / xx)
 	};
 	return {
 		id: options.id,
@@ -102,8 +103,8 @@ export function fitBothAxes(
 		centreX,
 		spreadX: xx,
 		residuals,
-		leverage: w.map((each, i) => each * (1 / total + (deviationX[i] ?? 0) ** 2 / xx)),
-		covariance: (-centreX / xx) * (options.policy === 'scatter' ? (deviation ?? 0) ** 2 : 1),
+		leverage: w.map((each, i) => each * (1 / total + square(deviationX[i] ?? 0) / xx)),
+		covariance: (-centreX / xx) * (options.policy === 'scatter' ? square(deviation ?? 0) : 1),
 		residualStandardDeviation: deviation,
 		chiSquared,
 		adjusted: deviationX.map((d) => ({ x: centreX + d, y: centreY + slope * d })),

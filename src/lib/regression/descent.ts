@@ -1,3 +1,4 @@
+import { square } from './fit-curve';
 import { Orthogonal } from './orthogonal';
 
 /** Weighted residuals of a model, and how its weighted values move with the parameters (one column each). */
@@ -100,7 +101,7 @@ class Place {
 		factored.rotate(this.rotated);
 		this.triangle = factored.triangle();
 		this.explained = Math.sqrt(
-			parameters.reduce((sum, _, k) => sum + (factored.standsApart(k) ? (this.rotated[k] ?? 0) ** 2 : 0), 0)
+			parameters.reduce((sum, _, k) => sum + (factored.standsApart(k) ? square(this.rotated[k] ?? 0) : 0), 0)
 		);
 	}
 
@@ -161,7 +162,7 @@ class Place {
 		for (let i = 0; i < step.length; i += 1) {
 			let moved = 0;
 			for (let j = i; j < step.length; j += 1) moved += (this.triangle[j]?.[i] ?? 0) * (step[j] ?? 0);
-			sum += moved * moved + 2 * damping * ((scale[i] ?? 0) * (step[i] ?? 0)) ** 2;
+			sum += moved * moved + 2 * damping * square((scale[i] ?? 0) * (step[i] ?? 0));
 		}
 		return sum;
 	}

@@ -66,3 +66,8 @@ export function addSquare(matrix: number[][], moves: readonly number[]): void {
 		for (let k = 0; k < line.length; k += 1) line[k] = (line[k] ?? 0) + (moves[j] ?? 0) * (moves[k] ?? 0);
 	});
 }
+
+/** The same bits everywhere, which the power operator does not promise. */
+export function square(value: number): number {
+	return value * value;
+}

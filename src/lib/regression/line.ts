@@ -12,6 +12,7 @@ import {
 import { compensatedSum } from '$lib/statistics';
 import { leastSquares, noSpread, readingVariances, weightedLine, type Sums, type Through } from './line-sums';
 import type { FitOptions, FitPolicy } from './fit-types';
+import { square } from './fit-curve';
 import { FitProblem } from './problems';
 import { chiSquaredOf } from './stated';
 
@@ -199,7 +200,7 @@ export function lineAt(fit: LineFit): (x: number) => { value: number } & Uncerta
 
 /** Where another reading of unit weight would fall: the line's own uncertainty and the scatter about it (policy 'scatter'). */
 export function nextReadingAt(fit: LineFit): (x: number) => { value: number } & Uncertainty {
-	return bandOf(fit, fit.policy === 'scatter' ? (fit.residualStandardDeviation ?? 0) ** 2 : 0);
+	return bandOf(fit, fit.policy === 'scatter' ? square(fit.residualStandardDeviation ?? 0) : 0);
 }
 
 function bandOf(fit: LineFit, scatter: number): (x: number) => { value: number } & Uncertainty {

@@ -1,5 +1,5 @@
 import { variance, type Component, type Source } from '$lib/quantities';
-import { addSquare, curve, partsOf, turn } from './fit-curve';
+import { addSquare, curve, partsOf, square, turn } from './fit-curve';
 import type { FitOptions, FitPolicy, ModelFit, Solved } from './fit-types';
 import { outOfRange } from './problems';
 import { chiSquaredOf, readingVariance } from './stated';
@@ -44,7 +44,7 @@ export function modelFit(solved: Solved, { id, scatterLabel, policy }: FitOption
 		covariance: covarianceOf(own, spread),
 		fitted: solved.fitted,
 		residuals,
-		leverage: y.map((_, i) => solved.directions.reduce((sum, column) => sum + square(column[i]), 0)),
+		leverage: y.map((_, i) => solved.directions.reduce((sum, column) => sum + square(column[i] ?? 0), 0)),
 		residualStandardDeviation: deviation,
 		chiSquared: chiSquaredOf(residuals, variances),
 		iterations: solved.iterations,
@@ -102,8 +102,4 @@ function covarianceOf(
 	return half.map((line) =>
 		spread.map((row) => row.reduce((sum, each, k) => sum + each * (line[k] ?? 0), 0))
 	);
-}
-
-function square(value: number | undefined): number {
-	return value === undefined ? 0 : value * value;
 }

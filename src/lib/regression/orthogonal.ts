@@ -1,3 +1,4 @@
+import { square } from './fit-curve';
 import { singular } from './problems';
 
 /** Smallest share of a column that may stand apart from the columns before it; below, rounding decides the answer. */
@@ -69,7 +70,7 @@ export class Orthogonal {
 	/** Whether column k holds more than rounding that the columns before it do not. */
 	standsApart(k: number): boolean {
 		let before = 0;
-		for (let i = 0; i <= k; i += 1) before += this.entry(i, k) ** 2;
+		for (let i = 0; i <= k; i += 1) before += square(this.entry(i, k));
 		return Math.abs(this.entry(k, k)) > leastIndependence * Math.sqrt(before);
 	}
 

@@ -7,7 +7,7 @@ import {
 	type Quantity,
 	type Source
 } from '$lib/quantities';
-import { compensatedSum } from './summaries';
+import { compensatedSum, square } from './summaries';
 
 export interface WeightedMean {
 	readonly mean: number;
@@ -29,7 +29,7 @@ export function weightedMean(
 	if (values.length === 0 || !weights.every((w) => w > 0 && w < Infinity)) return null;
 	const total = compensatedSum(weights);
 	const mean = centreOf(values, weights);
-	const chiSquared = compensatedSum(values.map((value, i) => (weights[i] ?? 0) * (value - mean) ** 2));
+	const chiSquared = compensatedSum(values.map((value, i) => (weights[i] ?? 0) * square(value - mean)));
 	const degreesOfFreedom = values.length - 1;
 	const standardError = 1 / Math.sqrt(total);
 	return {
@@ -104,9 +104,9 @@ function pauleMandel(values: readonly number[], own: readonly number[]): number 
 	for (let round = 0; round < 200; round += 1) {
 		const weights = own.map((u2) => 1 / (u2 + between2));
 		const mean = centreOf(values, weights);
-		const squares = values.map((value) => (value - mean) ** 2);
+		const squares = values.map((value) => square(value - mean));
 		const excess = compensatedSum(squares.map((s, i) => (weights[i] ?? 0) * s)) - (values.length - 1);
-		const fall = compensatedSum(squares.map((s, i) => (weights[i] ?? 0) ** 2 * s));
+		const fall = compensatedSum(squares.map((s, i) => square(weights[i] ?? 0) * s));
 		const next = Math.max(0, between2 + excess / fall);
 		if (Math.abs(next - between2) <= 1e-15 * next) return next;
 		between2 = next;

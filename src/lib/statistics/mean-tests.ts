@@ -1,6 +1,13 @@
 import { coverageFactor } from '$lib/quantities';
 import { fAbove, studentOutside } from './probability';
-import { mean, pooledStandardDeviation, standardDeviation, standardError, type Interval } from './summaries';
+import {
+	mean,
+	pooledStandardDeviation,
+	standardDeviation,
+	standardError,
+	square,
+	type Interval
+} from './summaries';
 
 export interface MeanTest {
 	/** mean minus the reference, or minus the other mean */
@@ -61,7 +68,7 @@ export function meansOfOwnScatter(
 	probability = usual
 ): MeanTest | null {
 	if (a.length < 2 || b.length < 2) return null;
-	const [va, vb] = [standardError(a) ** 2, standardError(b) ** 2];
+	const [va, vb] = [square(standardError(a)), square(standardError(b))];
 	const sum = va + vb;
 	const denominator = (va * va) / (a.length - 1) + (vb * vb) / (b.length - 1);
 	const degreesOfFreedom = denominator === 0 ? a.length + b.length - 2 : (sum * sum) / denominator;
@@ -93,7 +100,7 @@ export interface ScatterTest {
 /** Fisher's test of two scatters; null below two values each or where both are zero. */
 export function compareScatter(a: readonly number[], b: readonly number[]): ScatterTest | null {
 	if (a.length < 2 || b.length < 2) return null;
-	const ratio = (standardDeviation(a) / standardDeviation(b)) ** 2;
+	const ratio = square(standardDeviation(a) / standardDeviation(b));
 	if (Number.isNaN(ratio)) return null;
 	const [m, n] = [a.length - 1, b.length - 1];
 	const above = fAbove(ratio, m, n);

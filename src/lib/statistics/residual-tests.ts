@@ -1,4 +1,5 @@
 import { betaBelow } from './probability';
+import { square } from './summaries';
 import { normality, type Normality } from './normality';
 
 /** Below so many points a pattern in residuals cannot be told from chance. */
@@ -35,7 +36,7 @@ export function durbinWatson(
 ): ResidualTest {
 	const n = residuals.length;
 	const squares = residuals.reduce((sum, r) => sum + r * r, 0);
-	const steps = residuals.reduce((sum, r, i) => (i === 0 ? 0 : sum + (r - (residuals[i - 1] ?? 0)) ** 2), 0);
+	const steps = residuals.reduce((sum, r, i) => (i === 0 ? 0 : sum + square(r - (residuals[i - 1] ?? 0))), 0);
 	const statistic = squares > 0 ? steps / squares : null;
 	if (n < fewestToTell || statistic === null) return { ...tooFewToTell, statistic };
 	const { mean, variance } = moments(n, orthonormal(design ?? [residuals.map(() => 1), residuals.map((_, i) => i)])); // prettier-ignore

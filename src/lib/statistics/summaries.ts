@@ -12,6 +12,11 @@ export function compensatedSum(values: Iterable<number>): number {
 	return sum + lost;
 }
 
+/** The same bits everywhere, which the power operator does not promise. */
+export function square(value: number): number {
+	return value * value;
+}
+
 /** Arithmetic mean; NaN of nothing. */
 export function mean(values: readonly number[]): number {
 	return compensatedSum(values) / values.length;

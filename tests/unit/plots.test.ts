@@ -72,7 +72,7 @@ describe('a line with its points', () => {
 	});
 
 	it('needs no line', () => {
-		const bare = describePlot({ ...figure, line: null, series: [] }, { width: 400, height: 300 });
+		const bare = describePlot({ ...figure, series: [] }, { width: 400, height: 300 });
 		expect(bare.residual).toBeNull();
 		expect(bare.marks.some(({ class: name }) => name === 'fit')).toBe(false);
 	});

@@ -12,7 +12,8 @@ import {
 import type { LineFit } from '$lib/regression';
 import type { Fitted } from './fit-step';
 import { isLeaf } from './formula-tree';
-import { findColumn, namingFor, namingOf } from './named';
+import { namingFor } from './named';
+import { findColumn, namingOf } from './naming';
 import type { RowState } from './rows';
 import type { Session } from './session';
 import { showBudget } from './shown';

@@ -1,6 +1,6 @@
 import { checkFormulaUnit } from './check-units';
 import { FormulaProblem, parseValue, type FormulaScope } from './formula-parser';
-import { singleThings } from './named';
+import { singleThings } from './naming';
 import { ancestorsOf } from './relations';
 import type { Formula, Worksheet } from './types';
 

@@ -1,6 +1,7 @@
 import { standardUncertainty, type Quantity } from '$lib/quantities';
 import { isLeaf, nodesOf } from './formula-tree';
-import { findColumn, keyOf, namingOf } from './named';
+import { keyOf } from './named';
+import { findColumn, namingOf } from './naming';
 import { orderSteps } from './order';
 import { Session } from './session';
 import { withFormulas, withMistake } from './variant';

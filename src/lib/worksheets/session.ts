@@ -13,7 +13,7 @@ import { computeFit, type Fitted } from './fit-step';
 import { evaluateFormula, holds, type Surroundings } from './formula';
 import { nodesOf } from './formula-tree';
 import { Lookup, NotThere, type Manner } from './lookup';
-import { findColumn, labelOf } from './named';
+import { findColumn, labelOf } from './naming';
 import { readParameters, type ReadParameter } from './parameters';
 import { ancestorIn, textOf, unknownNames, type RowState } from './rows';
 import { Rows } from './rows-at-work';

@@ -12,7 +12,8 @@ import {
 import type { Fitted } from './fit-step';
 import { holds } from './formula';
 import { NotThere } from './lookup';
-import { findColumn, keyOf, rowSlugs } from './named';
+import { keyOf, rowSlugs } from './named';
+import { findColumn } from './naming';
 import { inUse, type RowState } from './rows';
 import type { Session } from './session';
 import { coverage } from './shown';

@@ -1,6 +1,7 @@
 import { covariance, differenceIn, intervalUnit, parseUnit, type Quantity } from '$lib/quantities';
 import type { Fitted } from './fit-step';
-import { findColumn, keyOf, namingFor, rowSlugs } from './named';
+import { keyOf, namingFor, rowSlugs } from './named';
+import { findColumn } from './naming';
 import type { RowState } from './rows';
 import type { Session } from './session';
 import { showQuantity } from './shown';

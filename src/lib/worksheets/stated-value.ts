@@ -7,7 +7,8 @@ import {
 	valueIn,
 	type Quantity
 } from '$lib/quantities';
-import { namedValues, namingOf } from './named';
+import { namedValues } from './named';
+import { namingOf } from './naming';
 import { Session } from './session';
 import { withMistake } from './variant';
 import type { MistakeDefinition, Readings, Worksheet } from './types';

@@ -26,6 +26,7 @@ export const emptyWorksheet: Worksheet = {
 	comparisons: [],
 	figures: [],
 	requirements: [],
+	mistakes: [],
 	outline: [],
 	rubrics: { prelab: null, notebook: null, report: { title: 'None', criteria: [] } },
 	order: []

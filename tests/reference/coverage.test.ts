@@ -57,7 +57,9 @@ describe('coverage of the 95 % interval', () => {
 				(torr) => torr + gauge + 0.5 * normal(),
 				true
 			);
-			const { names: found } = calculate(water, readings);
+			const atWork = new Session(water);
+			atWork.take(readings);
+			const found = atWork.names;
 			for (const name of names) {
 				const quantity = found.get(name);
 				if (!quantity) throw new Error(`There is no ${name}.`);

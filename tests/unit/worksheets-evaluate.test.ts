@@ -1,6 +1,13 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { engineVersion, evaluate, type Evaluation, type Readings, type Worksheet } from '$lib/worksheets';
+import {
+	engineVersion,
+	evaluate,
+	type Evaluation,
+	type Readings,
+	type Reference,
+	type Worksheet
+} from '$lib/worksheets';
 import { readingsOf, row, tenSteps, water } from './worksheets-fixture';
 
 function messages(evaluation: Evaluation): string[] {
@@ -232,12 +239,9 @@ describe('what is missing or cannot be read', () => {
 
 describe('comparison with the literature', () => {
 	/** The water worksheet with another reference for the boiling point. */
-	function withReference(
-		change: Partial<Worksheet['comparisons'][number]['reference']>,
-		limit = 1
-	): Worksheet {
+	function withReference(change: Partial<Reference>, limit = 1): Worksheet {
 		const comparisons = water.comparisons.map((comparison) =>
-			comparison.name === 'T_b'
+			comparison.name === 'T_b' && comparison.reference
 				? { ...comparison, limit, reference: { ...comparison.reference, ...change } }
 				: comparison
 		);

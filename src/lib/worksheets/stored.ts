@@ -178,7 +178,7 @@ export function evaluationFromStored(stored: StoredEvaluation): Evaluation {
 
 function shownFitFromStored({ parameters, covariance, ...fit }: StoredShownFit): ShownFit {
 	const list = Array.isArray(parameters) ? parameters : [parameters.slope, parameters.intercept];
-	const square = ({ standardUncertainty }: ShownQuantity) => (standardUncertainty ?? 0) ** 2;
+	const square = ({ standardUncertainty: u }: ShownQuantity) => (u ?? 0) * (u ?? 0);
 	return {
 		iterations: 0,
 		...fit,

@@ -91,7 +91,9 @@ describe('an evaluation that is kept from edit to edit', () => {
 					let readings = start;
 					edits.forEach((each, n) => {
 						readings = after(worksheet, readings, each, n);
-						expect(JSON.stringify(kept.evaluate(readings))).toBe(JSON.stringify(evaluate(worksheet, readings)));
+						expect(JSON.stringify(kept.evaluate(readings))).toBe(
+							JSON.stringify(evaluate(worksheet, readings))
+						);
 					});
 				}),
 				{ numRuns: 12, seed: 310 }

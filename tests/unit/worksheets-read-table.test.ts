@@ -55,7 +55,7 @@ describe('reading a table', () => {
 	it('takes columns in order without a header, and says so', () => {
 		expect(cells('82.93\t400.0\n85.35\t440.0')).toEqual(expected);
 		expect(problems('82.93\t400.0')).toEqual([
-			'No header, so the columns are taken in order: t in °C, p in Torr.'
+			'No header, so the columns are taken in order: t in °C, p in torr.'
 		]);
 		expect(problems('82,93\n85,35').join()).toContain('If that comma is a decimal sign');
 	});
@@ -68,7 +68,7 @@ describe('reading a table', () => {
 		]);
 		expect(table.problems.map(({ message }) => message)).toEqual([
 			't: converted from K to °C.',
-			'p: converted from kPa to Torr.'
+			'p: converted from kPa to torr.'
 		]);
 		expect(problems('t / s,p\n1,2')).toContain(
 			't: Temperature wanted; "s" is a time. The column was not taken.'

@@ -29,6 +29,8 @@ export interface FormulaScope {
 /** Longest text and largest tree of a formula: far beyond any in use, and small enough for every page. */
 const longest = 2_000;
 const largest = 500;
+/** Brackets within brackets. What a computer can follow beyond that depends on the computer. */
+const deepest = 100;
 
 const operators = {
 	add: 'add',
@@ -53,6 +55,8 @@ const comparisons: Readonly<Record<string, Comparing>> = {
  */
 export function parseFormula(text: string, scope: FormulaScope): Formula {
 	if (text.length > longest) throw new FormulaProblem(`A formula has at most ${longest} characters.`);
+	if (depthOf(text) > deepest)
+		throw new FormulaProblem('The formula is nested too deeply. Divide it into steps.');
 	let node: MathNode;
 	try {
 		node = parse(text);
@@ -69,6 +73,15 @@ export function parseFormula(text: string, scope: FormulaScope): Formula {
 		if (!(cause instanceof RangeError)) throw cause;
 	}
 	throw new FormulaProblem('The formula is too long. Divide it into steps.');
+}
+
+function depthOf(text: string): number {
+	let [depth, most] = [0, 0];
+	for (const sign of text) {
+		if ('([{'.includes(sign)) most = Math.max(most, (depth += 1));
+		else if (')]}'.includes(sign)) depth -= 1;
+	}
+	return most;
 }
 
 /** A formula that has to be a value. */

@@ -10,7 +10,8 @@ import {
 	recognisedInOwn,
 	statedValues,
 	worksheetOf,
-	type Session
+	type Session,
+	tracesOfMistakes
 } from './simulated-session';
 
 interface Options {
@@ -456,15 +457,7 @@ describe('recognised mistakes', () => {
 	});
 
 	it('all change something, and no two the same', () => {
-		const honest = statedValues(worksheet, simulate(222));
-		const kinds = worksheet.mistakes.map(({ code }) => {
-			const wrong = statedValues(mistaken(worksheet, code), simulate(222));
-			const changed = [...honest].filter(
-				([name, each]) => Math.abs((wrong.get(name) ?? NaN) / each - 1) > 1e-6
-			);
-			expect(changed.length, code).toBeGreaterThan(0);
-			return changed.map(([name]) => `${name} ${wrong.get(name)?.toPrecision(6)}`).join('; ');
-		});
+		const kinds = tracesOfMistakes(worksheet, simulate(222));
 		expect(new Set(kinds).size).toBe(worksheet.mistakes.length);
 	});
 });

@@ -10,7 +10,8 @@ import {
 	recognisedInOwn,
 	statedValues,
 	worksheetOf,
-	type Session
+	type Session,
+	tracesOfMistakes
 } from './simulated-session';
 
 interface Simulation {
@@ -280,15 +281,7 @@ describe('recognised mistakes', () => {
 	});
 
 	it('all change something, and no two the same', () => {
-		const right = statedValues(worksheet, simulate(314));
-		const kinds = worksheet.mistakes.map(({ code }) => {
-			const wrong = statedValues(mistaken(worksheet, code), simulate(314));
-			const changed = [...right].filter(
-				([name, each]) => Math.abs((wrong.get(name) ?? NaN) / each - 1) > 1e-6
-			);
-			expect(changed.length, code).toBeGreaterThan(0);
-			return changed.map(([name]) => `${name} ${wrong.get(name)?.toPrecision(6)}`).join('; ');
-		});
+		const kinds = tracesOfMistakes(worksheet, simulate(314));
 		expect(new Set(kinds).size).toBe(worksheet.mistakes.length);
 	});
 });

@@ -111,6 +111,17 @@ function firstChanged(worksheet: Worksheet, right: Evaluation, wrong: Evaluation
 	return null;
 }
 
+/** For each mistake, all that it changes in one session, as a text. @throws where one changes nothing */
+export function tracesOfMistakes(worksheet: Worksheet, session: Session): string[] {
+	const right = statedValues(worksheet, session);
+	return worksheet.mistakes.map(({ code }) => {
+		const wrong = statedValues(mistaken(worksheet, code), session);
+		const changed = [...right].filter(([name, each]) => Math.abs((wrong.get(name) ?? NaN) / each - 1) > 1e-6);
+		if (changed.length === 0) throw new Error(`The mistake ${code} changes nothing.`);
+		return changed.map(([name]) => `${name} ${wrong.get(name)?.toPrecision(6)}`).join('; ');
+	});
+}
+
 /** The text of a file beside the experiment. */
 export function exampleText(slug: string, name: string): string {
 	return readFileSync(new URL(`example/${name}`, folder(slug)), 'utf8');

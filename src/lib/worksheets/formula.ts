@@ -114,7 +114,7 @@ function compareTexts(how: Comparing, left: string, right: string): boolean {
 	return how === '==' ? left === right : left !== right;
 }
 
-function compareNumbers(how: Comparing, left: number, right: number): boolean {
+export function compareNumbers(how: Comparing, left: number, right: number): boolean {
 	switch (how) {
 		case '==':
 			return left === right;

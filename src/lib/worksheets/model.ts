@@ -1,7 +1,8 @@
 import { exactly, parseUnit } from '$lib/quantities';
 import { dual, type Dual, type Model } from '$lib/regression';
+import { compareNumbers } from './formula';
 import { isLeaf, leafKey, leavesOf, type Leaf } from './formula-tree';
-import type { Comparing, FitDefinition, Formula } from './types';
+import type { FitDefinition, Formula } from './types';
 
 /** The leaves of a curve's formula that are not its parameters, each once: the model's inputs. */
 export function inputLeaves(fit: FitDefinition): Leaf[] {
@@ -107,20 +108,12 @@ function holds(formula: Formula, look: Look): boolean {
 		case 'or':
 			return holds(formula.left, look) || holds(formula.right, look);
 		case 'compare':
-			return compare(formula.how, compute(formula.left, look).value, compute(formula.right, look).value);
+			return compareNumbers(
+				formula.how,
+				compute(formula.left, look).value,
+				compute(formula.right, look).value
+			);
 		default:
 			return false;
 	}
-}
-
-function compare(how: Comparing, left: number, right: number): boolean {
-	const by: Record<Comparing, boolean> = {
-		'==': left === right,
-		'!=': left !== right,
-		'<': left < right,
-		'<=': left <= right,
-		'>': left > right,
-		'>=': left >= right
-	};
-	return by[how];
 }
